@@ -1,0 +1,52 @@
+package bose
+
+import "math"
+
+// Curves are what the page draws of one solution.
+type Curves struct {
+	Eps, Density, Exponent, Occupation []float64 // over energies
+	Beta, Mu                           []float64 // beta*mu over sharpness
+}
+
+// curvePoints over energies, muPoints over sharpness.
+const curvePoints, muPoints = 160, 56
+
+// Curves returns the law, f, n over its energies, and mu over sharpness from 0 to twice what matters.
+func (s *Spectrum) Curves(beta float64, rule Rule, sol Solution) Curves {
+	var c Curves
+	_, high := s.law.Support()
+	if math.IsInf(high, 1) {
+		high = s.law.Quantile(0.995)
+	}
+	for i := range curvePoints {
+		x := (float64(i) + 0.02) / (curvePoints - 1)
+		e := math.Min(high, high*x*x) // closer together near the ground level
+		c.Eps = append(c.Eps, e)
+		c.Density = append(c.Density, s.law.Density(e))
+		c.Exponent = append(c.Exponent, Exponent(beta*e, sol.BetaMu))
+		c.Occupation = append(c.Occupation, Occupation(beta*e, sol.BetaMu))
+	}
+	top := muAxis(beta, sol.CriticalSharpness)
+	r := rule.Balance()
+	for i := 1; i <= muPoints; i++ {
+		b := top * float64(i) / muPoints
+		mu := 0.0
+		if s.GroundIntegral(b, 0) >= r {
+			mu, _ = s.Mu(b, r)
+		}
+		c.Beta, c.Mu = append(c.Beta, b), append(c.Mu, b*mu)
+	}
+	return c
+}
+
+// muAxis returns the end of the sharpness axis: the same while sharpness is dragged below it, so the curve stands still.
+func muAxis(beta, critical float64) float64 {
+	least := 10.0
+	if !math.IsNaN(critical) {
+		least = math.Max(least, 2*critical)
+	}
+	if beta <= least {
+		return least
+	}
+	return math.Pow(2, math.Ceil(math.Log2(beta)))
+}

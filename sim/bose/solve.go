@@ -1,0 +1,173 @@
+package bose
+
+import (
+	"fmt"
+	"math"
+
+	"preponder/sim/internal/root"
+	"preponder/sim/law"
+)
+
+// A Regime is where a network stands in endless growth.
+type Regime string
+
+// The regimes. Records: no ground level, fitter members take over for ever. Unknown: the rule is outside the theory.
+const (
+	Level      Regime = "level"
+	FitGetRich Regime = "fit-get-rich"
+	Condensate Regime = "condensate"
+	Records    Regime = "records"
+	Unknown    Regime = "unknown"
+)
+
+// A Rule is what the theory needs to know of the growth: links of a newcomer m, head start a, open share r.
+type Rule struct{ Links, HeadStart, OpenShare float64 }
+
+// Balance returns
+//
+//	R = m (1 - r) / (m (1 + r) + a),
+//
+// the value the ground integral is weighed against; 1 in the plain model. Derived by us from the continuum theory.
+func (r Rule) Balance() float64 {
+	return r.Links * (1 - r.OpenShare) / (r.Links*(1+r.OpenShare) + r.HeadStart)
+}
+
+// A Solution is the standing of a network in endless growth. Infinite values are +Inf, absent ones NaN.
+type Solution struct {
+	Regime            Regime
+	Balance           float64 // R
+	GroundIntegral    float64 // I(0)
+	Margin            float64 // I(0)/R, a condensate below 1
+	Mu                float64 // chemical potential, <= 0; NaN without a ground level or at sharpness 0
+	BetaMu            float64 // beta * mu, also where beta is 0
+	Condensate        float64 // share of all links that gathers on the fittest few, n0
+	LeaderExponent    float64 // leader's share ~ N^LeaderExponent
+	Halving           float64 // growth factor over which the lead halves; +Inf in a condensate
+	CriticalSharpness float64 // NaN where none exists
+	DissolveHeadStart float64 // head start that alone dissolves a condensate; NaN elsewhere
+	DissolveOpenShare float64 // open share that alone dissolves it; NaN elsewhere
+	MeanFitness       float64 // E[exp(-beta eps)]
+}
+
+// betaLow and betaHigh bound the search for a critical sharpness.
+const betaLow, betaHigh = 1e-6, 1e6
+
+// muLeast is the smallest -mu the solver distinguishes from 0.
+const muLeast = 1e-300
+
+// Solve returns the standing of a network with law l at sharpness beta >= 0. Relative error of I(0), mu and the critical
+// sharpness <= 1e-9.
+//
+//	mu:  I(beta, mu) = R if I(beta, 0) >= R, else 0
+//	n0 = (1 - r) - ((1 + r) + a/m) I(beta, 0) in a condensate
+func Solve(l law.Law, beta float64, rule Rule) (Solution, error) {
+	nan := math.NaN()
+	s := Solution{Balance: rule.Balance(), CriticalSharpness: nan, DissolveHeadStart: nan, DissolveOpenShare: nan, Mu: nan}
+	low, high := l.Support()
+	if beta == 0 || low == high {
+		f := s.Balance / (1 + s.Balance)
+		s.Regime, s.GroundIntegral, s.Margin, s.BetaMu, s.MeanFitness = Level, math.Inf(1), math.Inf(1), math.Log(f), 1
+		s.lead(f)
+		if low == 0 && high > 0 && beta == 0 {
+			s.CriticalSharpness = NewSpectrum(l).Critical(s.Balance)
+		}
+		if beta > 0 {
+			s.Mu = s.BetaMu / beta
+		}
+		return s, nil
+	}
+	if math.IsInf(low, -1) {
+		s.Regime, s.BetaMu, s.GroundIntegral, s.Margin, s.LeaderExponent, s.Halving, s.MeanFitness = Records, nan, nan, nan, nan, nan, nan
+		return s, nil
+	}
+	return NewSpectrum(l).Solve(beta, rule)
+}
+
+// Solve is the package's Solve for a law with a ground level and at least two energies, at sharpness beta > 0.
+func (s *Spectrum) Solve(beta float64, rule Rule) (Solution, error) {
+	nan := math.NaN()
+	r := rule.Balance()
+	out := Solution{Balance: r, DissolveHeadStart: nan, DissolveOpenShare: nan}
+	out.GroundIntegral = s.GroundIntegral(beta, 0)
+	out.Margin = out.GroundIntegral / r
+	out.CriticalSharpness = s.Critical(r)
+	out.MeanFitness = s.Mean(func(e float64) float64 { return math.Exp(-beta * e) })
+	if out.GroundIntegral < r {
+		i := out.GroundIntegral
+		out.Regime = Condensate
+		out.Condensate = (1 - rule.OpenShare) - ((1+rule.OpenShare)+rule.HeadStart/rule.Links)*i
+		out.DissolveHeadStart = rule.Links * (1/i - 1)
+		out.DissolveOpenShare = (1 - i) / (1 + i)
+		out.lead(1)
+		return out, nil
+	}
+	out.Regime = FitGetRich
+	mu, err := s.Mu(beta, r)
+	if err != nil {
+		return out, fmt.Errorf("the chemical potential at sharpness %g was not found: %w", beta, err)
+	}
+	out.Mu, out.BetaMu = mu, beta*mu
+	out.lead(math.Exp(out.BetaMu))
+	return out, nil
+}
+
+// lead fills in what follows from the leader's dynamic exponent f(0).
+func (s *Solution) lead(f float64) {
+	s.LeaderExponent = f - 1
+	s.Halving = math.Pow(2, 1/(1-f))
+}
+
+// Mu returns the chemical potential: I(beta, mu) = r, for 0 < r <= I(beta, 0). Newton's method in ln(-mu), kept inside a
+// bracket: -ln(1 + 1/r)/beta is at or below the root, because every energy is >= 0. A root nearer to 0 than 1e-300 is
+// returned as -1e-300.
+func (s *Spectrum) Mu(beta, r float64) (float64, error) {
+	low, high := math.Log(muLeast), math.Log(math.Log1p(1/r)/beta)
+	if s.GroundIntegral(beta, -muLeast) <= r {
+		return -muLeast, nil
+	}
+	y := high - 1
+	for range 200 {
+		mu := -math.Exp(y)
+		i := s.GroundIntegral(beta, mu)
+		if i > r {
+			low = y
+		} else {
+			high = y
+		}
+		// ln I is nearly straight in ln(-mu), so the step is taken there.
+		next := y - math.Log(i/r)*i/s.slope(beta, mu)
+		if !(next > low && next < high) {
+			next = (low + high) / 2
+		}
+		if math.Abs(next-y) < 1e-14*math.Max(1, math.Abs(y)) || high-low < 1e-14 {
+			return -math.Exp(next), nil
+		}
+		y = next
+	}
+	return -math.Exp(y), root.ErrNoConvergence
+}
+
+// Critical returns the sharpness at which a condensate begins, I(beta, 0) = r, or NaN where the law allows none in
+// [1e-6, 1e6]. Unique for laws whose edge exponent is positive, since I falls with beta.
+func (s *Spectrum) Critical(r float64) float64 {
+	if s.leveled() || s.edge.Theta <= 0 {
+		return math.NaN()
+	}
+	f := func(x float64) float64 { return math.Log(s.GroundIntegral(math.Exp(x), 0) / r) }
+	x, err := root.Brent(f, math.Log(betaLow), math.Log(betaHigh), 1e-13)
+	if err != nil {
+		return math.NaN()
+	}
+	return math.Exp(x)
+}
+
+// Occupation returns the mean number of links above the open share's floor, in units of m(1+r)+a, that a member of
+// energy eps holds:
+//
+//	n = 1 / (exp(beta (eps - mu)) - 1).
+//
+// +Inf at the ground level of a condensate.
+func Occupation(betaEps, betaMu float64) float64 { return 1 / math.Expm1(betaEps-betaMu) }
+
+// Exponent returns the dynamic exponent f = exp(-beta (eps - mu)): a member's tickets grow as (t/t0)^f.
+func Exponent(betaEps, betaMu float64) float64 { return math.Exp(betaMu - betaEps) }

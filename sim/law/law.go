@@ -1,0 +1,29 @@
+// Package law holds the distributions of energies a network's members are drawn from.
+//
+// An energy eps >= 0 belongs to every member; its fitness is exp(-sharpness*eps). The ground level is eps = 0.
+package law
+
+// A Law is a distribution of energies.
+type Law interface {
+	// Density returns p(eps), 0 outside the support. Laws of levels return 0 everywhere and implement Leveled.
+	Density(eps float64) float64
+	// Cumulative returns P(energy <= eps).
+	Cumulative(eps float64) float64
+	// Quantile returns the energy below which a share u of the members lies, 0 < u < 1; increasing in u, the same bits on
+	// every machine. Energies are drawn as Quantile of a keyed uniform.
+	Quantile(u float64) float64
+	// Support returns the least and the largest energy; either may be infinite.
+	Support() (low, high float64)
+	// Edge describes the density at the ground level.
+	Edge() Edge
+}
+
+// An Edge is the leading term p(eps) ~ Scale * eps^Theta as eps -> 0, and the mass of an atom at the ground level.
+type Edge struct {
+	Theta, Scale, Atom float64
+}
+
+// A Leveled law is discrete: members share a few energies.
+type Leveled interface {
+	Levels() (energy, weight []float64)
+}

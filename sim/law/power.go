@@ -1,0 +1,32 @@
+package law
+
+import (
+	"math"
+
+	"preponder/sim/internal/exact"
+)
+
+// Power is the law of energies
+//
+//	p(eps) = (theta+1) eps^theta on [0, 1], theta > -1.
+//
+// theta = d/2 - 1 is the density of states of a free gas in d dimensions, cut off at 1.
+type Power struct{ Theta float64 }
+
+func (p Power) Density(eps float64) float64 {
+	if eps <= 0 || eps > 1 {
+		return 0
+	}
+	return (p.Theta + 1) * math.Pow(eps, p.Theta)
+}
+
+func (p Power) Cumulative(eps float64) float64 {
+	if eps <= 0 {
+		return 0
+	}
+	return math.Pow(math.Min(eps, 1), p.Theta+1)
+}
+
+func (p Power) Quantile(u float64) float64   { return exact.Pow(u, 1/(p.Theta+1)) }
+func (p Power) Support() (low, high float64) { return 0, 1 }
+func (p Power) Edge() Edge                   { return Edge{Theta: p.Theta, Scale: p.Theta + 1} }
