@@ -1,0 +1,365 @@
+package growth
+
+import (
+	"math"
+
+	"preponder/sim/internal/exact"
+)
+
+const (
+	tries   = 64   // by rejection, before the exact weighted draw
+	between = 4096 // newcomers between two calls of step
+)
+
+// Grow grows the network. step is called now and then with the share done and may end the growth with an error, which
+// Grow returns; it may be nil.
+func Grow(p Params, step func(done float64) error) (*Network, error) {
+	n := &Network{Params: p, from: 1}
+	defer func() { n.Params = p }()
+	if p.Start != nil {
+		n.from = len(p.Start.Energy)
+	}
+	g := &grower{Network: n, levers: p, own: p.Links + p.HeadStart, key: exact.Key(p.Seed, exact.Links), extra: exact.Key(p.Seed, exact.Extra)}
+	if g.LeversFrom > g.from {
+		g.HeadStart, g.OpenShare, g.Ceiling, g.Distinct = 0, 0, 0, false
+		g.own = p.Links
+	}
+	g.makeRoom()
+	energies := exact.Key(p.Seed, exact.Energies)
+	for v := range n.from {
+		if p.Start == nil {
+			g.join(v, exact.Unit(exact.Bits(energies, uint64(v), 0)))
+		} else {
+			n.Energy[v] = p.Start.Energy[v]
+			if p.Start.Rank != nil {
+				n.Rank[v] = p.Start.Rank[v]
+			}
+			g.present(v)
+		}
+	}
+	for v := n.from; v < p.Members; v++ {
+		if step != nil && v%between == 0 {
+			if err := step(float64(v-n.from) / float64(p.Members-n.from)); err != nil {
+				return nil, err
+			}
+		}
+		if v == p.LeversFrom {
+			g.pullLevers()
+		}
+		g.newcomer(v)
+		g.join(v, exact.Unit(exact.Bits(energies, uint64(v), 0)))
+	}
+	return n, nil
+}
+
+// A grower is a network in the making.
+type grower struct {
+	*Network
+	levers      Params  // as asked for; Network's own are plain until LeversFrom
+	own         float64 // tickets a member has before it receives any
+	key, extra  uint64
+	weight      []float64 // fitness relative to the best so far
+	best        float64   // energy of the best so far
+	received    []int32   // kept only where the ceiling or the tree needs it
+	closed      []int32   // members at the ceiling
+	tree        *sumTree  // nil while rejection works
+	untilReject int       // links left before rejection is tried again
+	chosen      []int32   // by the newcomer at hand, for Distinct
+}
+
+// pullLevers puts the levers in force, at the size they were asked for.
+func (g *grower) pullLevers() {
+	if g.LeversFrom <= g.from {
+		return
+	}
+	g.HeadStart, g.OpenShare, g.Ceiling, g.Distinct = g.levers.HeadStart, g.levers.OpenShare, g.levers.Ceiling, g.levers.Distinct
+	g.own = g.Links + g.HeadStart
+	if g.Ceiling > 0 {
+		g.count()
+		for j := range g.LeversFrom {
+			g.watch(int32(j))
+		}
+	}
+	g.tree = nil
+}
+
+func (g *grower) makeRoom() {
+	p := g.Params
+	g.Energy = make([]float64, p.Members)
+	g.Rank = make([]float32, p.Members)
+	g.weight = make([]float64, p.Members)
+	g.best = math.Inf(1)
+	whole := p.Links == math.Floor(p.Links) && p.Start == nil && !(g.levers.Distinct && p.LeversFrom > 1)
+	if whole {
+		g.Targets = make([]int32, 0, g.LinksBefore(p.Members))
+	} else {
+		g.Targets = startTargets(p)
+		g.first = make([]int32, 1, p.Members-g.from+1)
+		g.first[0] = int32(len(g.Targets))
+	}
+	if p.Ceiling > 0 {
+		g.count()
+		for j := range g.from {
+			g.watch(int32(j))
+		}
+	}
+}
+
+// startTargets lays the links of the start out as targets, room for the rest behind them.
+func startTargets(p Params) []int32 {
+	if p.Start == nil {
+		return make([]int32, 0, int(float64(p.Members)*(p.Links+1)))
+	}
+	links := 0
+	for _, d := range p.Start.Received {
+		links += int(d)
+	}
+	t := make([]int32, 0, links+int(float64(p.Members-len(p.Start.Energy))*(p.Links+1)))
+	for j, d := range p.Start.Received {
+		for range d {
+			t = append(t, int32(j))
+		}
+	}
+	return t
+}
+
+// count fills in the links received so far.
+func (g *grower) count() {
+	g.received = make([]int32, g.Members)
+	for _, j := range g.Targets {
+		g.received[j]++
+	}
+}
+
+// join gives member v the energy at rank u of the law.
+func (g *grower) join(v int, u float64) {
+	g.Rank[v] = float32(u)
+	g.Energy[v] = g.Law.Quantile(u)
+	g.present(v)
+}
+
+// present lets member v be chosen from. A new best rescales all weights: that happens about ln N times, and costs N steps
+// in all on average.
+func (g *grower) present(v int) {
+	e := g.Energy[v]
+	if e < g.best {
+		if !math.IsInf(g.best, 1) && g.Sharpness > 0 {
+			for j := range v {
+				g.weight[j] = exact.Exp(float64(-g.Sharpness * (g.Energy[j] - e)))
+			}
+		}
+		g.best = e
+		g.weight[v] = 1
+		if g.tree != nil {
+			g.plant(v + 1)
+		}
+		return
+	}
+	g.weight[v] = exact.Exp(float64(-g.Sharpness * (e - g.best)))
+	if g.tree != nil {
+		g.tree.set(v, g.pull(int32(v)))
+	}
+}
+
+// newcomer draws the links of member v and notes them.
+func (g *grower) newcomer(v int) {
+	links := int(g.Links)
+	if part := g.Links - math.Floor(g.Links); part > 0 && exact.Unit(exact.Bits(g.extra, uint64(v), 1)) < part {
+		links++
+	}
+	if g.Distinct {
+		links = min(links, v)
+	}
+	before := len(g.Targets)
+	for range links {
+		j := g.draw(v, before)
+		g.chosen = append(g.chosen, j)
+		if g.Distinct && g.tree != nil {
+			g.tree.set(int(j), 0)
+		}
+	}
+	g.Targets = append(g.Targets, g.chosen...)
+	if g.first != nil {
+		g.first = append(g.first, int32(len(g.Targets)))
+	}
+	g.settle()
+	g.chosen = g.chosen[:0]
+}
+
+// settle brings counts, ceiling and tree up to date after a newcomer.
+func (g *grower) settle() {
+	if g.received == nil {
+		return
+	}
+	for _, j := range g.chosen {
+		g.received[j]++
+	}
+	if g.Ceiling > 0 {
+		was := g.closed
+		g.closed = nil
+		for _, j := range was {
+			g.watch(j)
+		}
+		for _, j := range g.chosen {
+			g.watch(j)
+		}
+		if g.tree != nil {
+			for _, j := range was {
+				g.tree.set(int(j), g.pull(j))
+			}
+			for _, j := range g.closed {
+				g.tree.set(int(j), 0)
+			}
+		}
+	}
+	if g.tree == nil {
+		return
+	}
+	for _, j := range g.chosen {
+		g.tree.set(int(j), g.pull(j))
+	}
+	if g.untilReject -= len(g.chosen); g.untilReject <= 0 {
+		g.tree = nil
+		if g.Ceiling == 0 {
+			g.received = nil
+		}
+	}
+}
+
+// watch puts j on the list of members at the ceiling if it stands there.
+func (g *grower) watch(j int32) {
+	if g.received[j] > 0 && float64(g.received[j]) >= float64(g.Ceiling*float64(len(g.Targets))) && !has(g.closed, j) {
+		g.closed = append(g.closed, j)
+	}
+}
+
+// pull returns eta_j T_j relative to the best fitness, 0 at the ceiling.
+func (g *grower) pull(j int32) float64 {
+	if has(g.closed, j) {
+		return 0
+	}
+	return float64(g.weight[j] * (g.own + float64(g.received[j])))
+}
+
+func has(list []int32, j int32) bool {
+	for _, k := range list {
+		if k == j {
+			return true
+		}
+	}
+	return false
+}
+
+// barred reports whether the next link of the newcomer at hand may not go to j.
+func (g *grower) barred(j int32) bool {
+	return (g.Distinct && has(g.chosen, j)) || has(g.closed, j)
+}
+
+// draw returns the member the next link of newcomer v goes to; links is the number made before v came.
+func (g *grower) draw(v, links int) int32 {
+	index := uint64(links + len(g.chosen))
+	if g.OpenShare > 0 && exact.Unit(exact.Bits(g.extra, index, 0)) < g.OpenShare {
+		return g.drawAny(v, index)
+	}
+	if g.tree != nil {
+		return g.drawExact(v, index)
+	}
+	own := float64(g.own * float64(v))
+	all := own + float64(links)
+	targets := g.Targets[:links]
+	plain := len(g.closed) == 0 && !g.Distinct
+	for try := range uint64(tries) {
+		bits := exact.Bits(g.key, index, try)
+		x := float64(exact.Unit(bits) * all)
+		var j int32
+		if x < own {
+			j = int32(min(int(x/g.own), v-1))
+		} else {
+			j = targets[min(int(x-own), links-1)]
+		}
+		if w := g.weight[j]; w < 1 && exact.Unit(exact.Again(bits)) >= w {
+			continue
+		}
+		if plain || !g.barred(j) {
+			return j
+		}
+	}
+	g.plant(v)
+	return g.drawExact(v, index)
+}
+
+// drawAny returns a member drawn uniformly from those that may take the link.
+func (g *grower) drawAny(v int, index uint64) int32 {
+	for try := range uint64(tries) {
+		j := int32(exact.Unit(exact.Bits(g.extra, index, try+2)) * float64(v))
+		if !g.barred(j) {
+			return j
+		}
+	}
+	return g.scan(v, exact.Unit(exact.Bits(g.extra, index, tries+2)), func(int) float64 { return 0 })
+}
+
+// plant builds the sum tree over the first v members. It stays for a share of v links, so that planting costs a bounded
+// number of steps a link.
+func (g *grower) plant(v int) {
+	if g.received == nil {
+		g.count()
+	}
+	if g.tree == nil {
+		g.tree = newSumTree(g.Members)
+		g.untilReject = max(1000, v/4)
+	}
+	g.tree.fill(v, func(j int) float64 {
+		if g.Distinct && has(g.chosen, int32(j)) {
+			return 0
+		}
+		return g.pull(int32(j))
+	})
+}
+
+// drawExact returns a member with the exact probability, from the tree. Where no member with weight above the smallest
+// number is open, it compares in logs instead.
+func (g *grower) drawExact(v int, index uint64) int32 {
+	u := exact.Unit(exact.Bits(g.key, index, tries))
+	if g.tree.total() > 1e-280 {
+		return int32(g.tree.find(float64(u * g.tree.total())))
+	}
+	return g.scan(v, u, func(j int) float64 {
+		return float64(-g.Sharpness*(g.Energy[j]-g.best)) + exact.Log(g.own+float64(g.received[j]))
+	})
+}
+
+// scan draws from exp(logWeight) over the members that are not barred; if all are, over those not chosen yet.
+func (g *grower) scan(v int, u float64, logWeight func(j int) float64) int32 {
+	open := func(j int) bool { return !g.barred(int32(j)) }
+	top := math.Inf(-1)
+	for j := range v {
+		if open(j) {
+			top = math.Max(top, logWeight(j))
+		}
+	}
+	if math.IsInf(top, -1) {
+		open = func(j int) bool { return !g.Distinct || !has(g.chosen, int32(j)) }
+		for j := range v {
+			if open(j) {
+				top = math.Max(top, logWeight(j))
+			}
+		}
+	}
+	sum, last := 0.0, 0
+	for j := range v {
+		if open(j) {
+			sum += exact.Exp(logWeight(j) - top)
+			last = j
+		}
+	}
+	at := float64(u * sum)
+	for j := range v {
+		if open(j) {
+			if at -= exact.Exp(logWeight(j) - top); at < 0 {
+				return int32(j)
+			}
+		}
+	}
+	return int32(last)
+}

@@ -1,0 +1,119 @@
+// Package growth grows a network one member at a time, by keyed draws.
+//
+// A newcomer v brings m links. Each goes, with probability r (the open share), to a member drawn uniformly from those
+// present; otherwise to member j with probability proportional to eta_j T_j, where
+//
+//	eta_j = exp(-beta eps_j)      fitness
+//	T_j   = m + a + d_j           tickets: links it brings, head start, links received
+//
+// all as they stood before v came. Member 0 is alone at first; member 1 puts its m links on it.
+//
+//	distinct  a newcomer's links go to different members, drawn one after another without replacement; while fewer than m
+//	          members are there, it makes one to each
+//	ceiling c a member with d_j >= c L, L all links before the newcomer came, takes none; if every member a link could go
+//	          to stands at the ceiling, the ceiling does not hold for that link
+package growth
+
+import (
+	"crypto/sha256"
+	"encoding/binary"
+	"encoding/hex"
+	"math"
+
+	"preponder/sim/internal/exact"
+	"preponder/sim/law"
+)
+
+// MaxMembers and MaxLinks bound a network.
+const MaxMembers, MaxLinks = 10_000_000, 64
+
+// Params say which network to grow. The zero levers are the plain rule.
+type Params struct {
+	Law        law.Law
+	Sharpness  float64 // beta >= 0
+	Links      float64 // m, links of a newcomer; a fraction means one more link in that share of newcomers
+	HeadStart  float64 // a >= 0
+	OpenShare  float64 // r in [0, 1]
+	Ceiling    float64 // share of all links, 0 = none
+	Distinct   bool
+	Members    int // size to grow to
+	LeversFrom int // size at which the levers come into force; 0 = from the start
+	Seed       uint32
+	Start      *Start // nil: member 0 alone
+}
+
+// A Start is a network that already stands: energies, ranks (may be nil) and links received of its members.
+type Start struct {
+	Energy   []float64
+	Rank     []float32
+	Received []int32
+}
+
+// A Network is what growth leaves: a network of N members holds every smaller one.
+type Network struct {
+	Params
+	Energy  []float64 // of each member
+	Rank    []float32 // share of the law that is fitter than it; for a start's members as it says
+	Targets []int32   // of each link, in order
+	first   []int32   // links before member v, where they are no plain multiple; nil otherwise
+	from    int       // members of the start
+}
+
+// LinksBefore returns how many links were made before member v came; with v = Members all of them.
+func (n *Network) LinksBefore(v int) int {
+	if n.first != nil {
+		return int(n.first[max(v-n.from, 0)])
+	}
+	m := int(n.Links)
+	if v <= 1 {
+		return 0
+	}
+	if !n.Distinct || v <= m {
+		if !n.Distinct {
+			return m * (v - 1)
+		}
+		return v * (v - 1) / 2
+	}
+	return m*(m-1)/2 + m*(v-m)
+}
+
+// From returns the size the growth began at: 1, or the members of the start.
+func (n *Network) From() int { return n.from }
+
+// Received returns the links each of the first v members has received.
+func (n *Network) Received(v int) []int32 {
+	d := make([]int32, v)
+	for _, j := range n.Targets[:n.LinksBefore(v)] {
+		d[j]++
+	}
+	return d
+}
+
+// Digest returns the hex SHA-256 of the targets as little-endian int32.
+func (n *Network) Digest() string {
+	h := sha256.New()
+	buf := make([]byte, 0, 1<<16)
+	for _, j := range n.Targets {
+		if buf = binary.LittleEndian.AppendUint32(buf, uint32(j)); len(buf) == cap(buf) {
+			h.Write(buf)
+			buf = buf[:0]
+		}
+	}
+	h.Write(buf)
+	return hex.EncodeToString(h.Sum(nil))
+}
+
+// BetaMu returns beta times the chemical potential this very network shows at its size,
+//
+//	exp(-beta mu) = Z / (t m (1 - r)),   Z = sum eta_j T_j.
+func (n *Network) BetaMu(received []int32) float64 {
+	least := math.Inf(1)
+	for _, e := range n.Energy {
+		least = math.Min(least, e)
+	}
+	z := 0.0
+	for j, d := range received {
+		z += exact.Exp(-n.Sharpness*(n.Energy[j]-least)) * (n.Links + n.HeadStart + float64(d))
+	}
+	return n.Sharpness*least - math.Log(z/(float64(len(received))*n.Links*(1-n.OpenShare)))
+}

@@ -1,0 +1,102 @@
+// Package share measures how links are spread: leader, CR4, HHI, Gini, and how they went as the network grew.
+//
+// A member's share is the links it received over all links. HHI is in points, the sum of squared percentages (0 to
+// 10,000). Gini is over all members, those without a link included.
+package share
+
+import "slices"
+
+// Spread describes one network.
+type Spread struct {
+	Links   int
+	Leader  int // oldest of the members that hold most; -1 without links
+	Share   float64
+	Top4    float64
+	HHI     float64
+	Gini    float64
+	Ranking []int32 // members by links received, the eight largest at most
+}
+
+// Of measures the links received by each member.
+func Of(received []int32) Spread {
+	s := Spread{Leader: -1}
+	sum, square := 0.0, 0.0
+	for _, d := range received {
+		s.Links += int(d)
+		square += float64(d) * float64(d)
+	}
+	if s.Links == 0 {
+		return s
+	}
+	sum = float64(s.Links)
+	s.Ranking = Largest(received, 8)
+	s.Leader = int(s.Ranking[0])
+	s.Share = float64(received[s.Leader]) / sum
+	for i, j := range s.Ranking {
+		if i < 4 {
+			s.Top4 += float64(received[j]) / sum
+		}
+	}
+	s.HHI = 1e4 * square / (sum * sum)
+	s.Gini = Gini(received)
+	return s
+}
+
+// Largest returns the k members that hold most links, older first among equals.
+func Largest(received []int32, k int) []int32 {
+	var top []int32
+	for j, d := range received {
+		if len(top) == k && d <= received[top[k-1]] {
+			continue
+		}
+		at := len(top)
+		for at > 0 && received[top[at-1]] < d {
+			at--
+		}
+		top = slices.Insert(top, at, int32(j))
+		if len(top) > k {
+			top = top[:k]
+		}
+	}
+	return top
+}
+
+// Gini returns the Gini coefficient of the values, 0 when all are equal:
+//
+//	G = 2 sum i x_(i) / (n sum x) - (n + 1)/n,   x sorted increasing, i from 1.
+//
+// No small-sample correction: one owner among n gives 1 - 1/n.
+func Gini(values []int32) float64 {
+	top := int32(0)
+	for _, d := range values {
+		top = max(top, d)
+	}
+	// Sorted by counting; the few values far above the rest are sorted by themselves.
+	const dense = 4096
+	count := make([]int, dense)
+	var far []int32
+	for _, d := range values {
+		if d < dense {
+			count[d]++
+		} else {
+			far = append(far, d)
+		}
+	}
+	slices.Sort(far)
+	n, sum, weighted, rank := float64(len(values)), 0.0, 0.0, 0.0
+	for d, c := range count {
+		cf, df := float64(c), float64(d)
+		weighted += df * (cf*rank + cf*(cf+1)/2)
+		rank += cf
+		sum += cf * df
+	}
+	for _, d := range far {
+		rank++
+		weighted += rank * float64(d)
+		sum += float64(d)
+	}
+	if sum == 0 {
+		return 0
+	}
+	return 2*weighted/(n*sum) - (n+1)/n
+}
