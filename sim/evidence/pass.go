@@ -1,0 +1,348 @@
+package evidence
+
+import (
+	"math"
+	"math/bits"
+)
+
+// Terms are the exponents of the extended rule
+//
+//	w_j = (kappa + d_j)^alpha age_j^-nu idle_j^-mu
+//
+// age in arrivals since j came, idle in moments of the log since j was last source or target, both at least 1 and taken
+// constant on half-octaves. Plain: alpha = 1, nu = mu = 0.
+type Terms struct{ Alpha, LogKappa, Nu, Mu float64 }
+
+// features is the number of terms: derivatives of ln w by alpha, ln kappa, nu, mu.
+const features = 4
+
+// A sums is what one pass over the log yields for given fitness and terms.
+type sums struct {
+	logLik   float64           // sum over choices of ln w_target - ln Z, without the fitness of the target
+	exposure []float64         // E_j = sum over choices whose set holds j of w_j / Z
+	chosen   []int32           // n_j
+	gradient [features]float64 // of the sum over choices of ln p_target by the terms
+	chance   []float64         // p of each choice, if asked for
+	present  []int32           // size of its choice set, if asked for
+}
+
+// want says what a pass is for beside likelihood and exposures.
+type want int
+
+const (
+	exposures want = iota
+	slopes         // the gradient by the terms, also at the plain rule
+	chances        // the chance of every choice
+)
+
+// A passer walks the log once, keeping Z = sum eta_j w_j and its derivatives by increments.
+type passer struct {
+	h     *History
+	eta   []float64
+	terms Terms
+	plain bool
+
+	out      sums
+	w        []float64 // current weights, 0 before arrival
+	last     []float64 // S when E_j was last brought up to date
+	s        float64   // sum of 1/Z over choices so far
+	z        float64
+	zx       [features]float64
+	links    []int32 // received so far
+	ageClass []int16
+	idle     []int16
+	active   []int32   // group of last activity
+	picks    [][]int32 // earlier picks of each source, nil where pairs repeat
+	ageDue   calendar
+	idleDue  calendar
+	here     int // members present
+
+	// Kept so that a change of weight costs no logarithm: ln(kappa + d) and (kappa + d)^alpha of every member, and the
+	// factors of the half-octaves of age and idleness.
+	kappa       float64
+	lnTickets   []float64
+	power       []float64
+	aged, idled [64]float64
+}
+
+// pass evaluates the conditional likelihood. Cost: O(links + members) plain; the half-octaves add O(log) changes a
+// member and activity.
+func pass(h *History, eta []float64, t Terms, w want) sums {
+	n := h.Members()
+	p := &passer{h: h, eta: eta, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes,
+		w: make([]float64, n), last: make([]float64, n), links: make([]int32, n)}
+	p.out = sums{exposure: make([]float64, n), chosen: make([]int32, n)}
+	if !p.plain {
+		p.ageClass, p.idle, p.active = make([]int16, n), make([]int16, n), make([]int32, n)
+		p.ageDue, p.idleDue = newCalendar(n+1), newCalendar(h.Groups()+1)
+		p.prepare()
+	}
+	p.kappa = math.Exp(t.LogKappa)
+	if h.Repeats == 0 {
+		p.picks = make([][]int32, n)
+	}
+	if w == chances {
+		p.out.chance = make([]float64, 0, h.Choices)
+		p.out.present = make([]int32, 0, h.Choices)
+	}
+	for g := range h.Groups() {
+		p.age(g)
+		for i := h.Group[g]; i < h.Group[g+1]; i++ {
+			if h.choice(i, g) {
+				p.choose(i, g, w)
+			}
+		}
+		p.update(g)
+	}
+	for j := range p.w {
+		p.out.exposure[j] += p.w[j] * (p.s - p.last[j])
+	}
+	return p.out
+}
+
+// choose accounts for one choice.
+func (p *passer) choose(i int32, g int, w want) {
+	src, t := p.h.Source[i], p.h.Target[i]
+	z, zx := p.z, p.zx
+	barred := 0
+	drop := func(k int32) {
+		barred++
+		z -= p.eta[k] * p.w[k]
+		if !p.plain {
+			for f, x := range p.features(k) {
+				zx[f] -= p.eta[k] * p.w[k] * x
+			}
+		}
+	}
+	p.barred(src, g, drop)
+	p.barred(src, g, func(k int32) { p.out.exposure[k] -= p.w[k] / z })
+	p.s += 1 / z
+	p.out.chosen[t]++
+	p.out.logLik += math.Log(p.w[t]) - math.Log(z)
+	x := p.features(t)
+	if !p.plain {
+		for f := range x {
+			p.out.gradient[f] += x[f] - zx[f]/z
+		}
+	}
+	if w == chances {
+		p.out.chance = append(p.out.chance, p.eta[t]*p.w[t]/z)
+		p.out.present = append(p.out.present, int32(p.here-barred))
+	}
+}
+
+// barred calls f for the members present that source may not choose.
+func (p *passer) barred(source int32, g int, f func(k int32)) {
+	if int(p.h.Arrived[source]) >= g {
+		return
+	}
+	f(source)
+	if p.picks != nil {
+		for _, k := range p.picks[source] {
+			f(k)
+		}
+	}
+}
+
+func (p *passer) features(j int32) [features]float64 {
+	if p.plain {
+		return [features]float64{}
+	}
+	t := p.kappa + float64(p.links[j])
+	return [features]float64{p.lnTickets[j], p.terms.Alpha * p.kappa / t, -octaves[p.ageClass[j]], -octaves[p.idle[j]]}
+}
+
+// prepare fills the tables of the extended rule.
+func (p *passer) prepare() {
+	n := len(p.w)
+	p.lnTickets, p.power = make([]float64, n), make([]float64, n)
+	first := math.Exp(p.terms.Alpha * p.terms.LogKappa)
+	for j := range n {
+		p.lnTickets[j], p.power[j] = p.terms.LogKappa, first
+	}
+	for c := range p.aged {
+		p.aged[c] = math.Exp(-p.terms.Nu * octaves[c])
+		p.idled[c] = math.Exp(-p.terms.Mu * octaves[c])
+	}
+}
+
+var octaves = func() (o [64]float64) {
+	for c := range o {
+		o[c] = octave(int16(c))
+	}
+	return o
+}()
+
+// octave returns the logarithm that stands for a half-octave class.
+func octave(class int16) float64 {
+	if class == 0 {
+		return 0
+	}
+	return (float64(class) + 0.5) * (math.Ln2 / 2)
+}
+
+// leaving holds the first whole number beyond each class.
+var leaving = func() (l [60]int) {
+	for c := range l {
+		l[c] = int(math.Ceil(math.Pow(2, float64(c+1)/2) - 1e-9))
+	}
+	return l
+}()
+
+func leaves(class int16) int { return leaving[class] }
+
+// classOf returns the half-octave of x >= 1.
+func classOf(x int) int16 {
+	c := int16(max(0, 2*bits.Len(uint(x))-3))
+	for x >= leaving[c] {
+		c++
+	}
+	return c
+}
+
+// set brings member j's weight up to date.
+func (p *passer) set(j int32) {
+	old := p.w[j]
+	var now float64
+	if p.plain {
+		now = p.kappa + float64(p.links[j])
+	} else {
+		x := p.features(j)
+		now = p.power[j] * p.aged[p.ageClass[j]] * p.idled[p.idle[j]]
+		for f := range x {
+			p.zx[f] += p.eta[j] * now * x[f]
+		}
+	}
+	p.out.exposure[j] += old * (p.s - p.last[j])
+	p.last[j] = p.s
+	p.z += p.eta[j] * (now - old)
+	p.w[j] = now
+}
+
+// unset takes j's weighted features out of the sums before anything it depends on changes.
+func (p *passer) unset(j int32) {
+	if p.plain || p.w[j] == 0 {
+		return
+	}
+	for f, x := range p.features(j) {
+		p.zx[f] -= p.eta[j] * p.w[j] * x
+	}
+}
+
+// age moves the members that leave their half-octave of age or idleness before group g.
+func (p *passer) age(g int) {
+	if p.plain {
+		return
+	}
+	p.idleDue.drain(g, func(j int32) {
+		if class := classOf(g - int(p.active[j])); class != p.idle[j] {
+			p.unset(j)
+			p.idle[j] = class
+			p.set(j)
+			p.idleDue.put(int(p.active[j])+leaves(class), j)
+		}
+	})
+}
+
+// update adds what group g brought.
+func (p *passer) update(g int) {
+	first, end := p.h.Group[g], p.h.Group[g+1]
+	for i := first; i < end; i++ {
+		src, t := p.h.Source[i], p.h.Target[i]
+		for _, j := range [2]int32{src, t} {
+			p.touch(j, g)
+		}
+		p.unset(t)
+		p.links[t]++
+		if !p.plain {
+			p.lnTickets[t] = math.Log(p.kappa + float64(p.links[t]))
+			p.power[t] = math.Exp(p.terms.Alpha * p.lnTickets[t])
+		}
+		p.set(t)
+		if p.picks != nil {
+			p.picks[src] = append(p.picks[src], t)
+		}
+	}
+}
+
+// touch makes j present and active in group g.
+func (p *passer) touch(j int32, g int) {
+	if p.w[j] == 0 {
+		if !p.plain {
+			p.ageDue.put(int(j)+leaves(0), j)
+			p.active[j] = int32(g)
+			p.idleDue.put(g+leaves(0), j)
+		}
+		p.set(j)
+		p.here++
+		p.grow()
+		return
+	}
+	if p.plain || int(p.active[j]) == g {
+		return
+	}
+	p.active[j] = int32(g)
+	if p.idle[j] != 0 {
+		p.unset(j)
+		p.idle[j] = 0
+		p.set(j)
+	}
+	p.idleDue.put(g+leaves(0), j)
+}
+
+// grow ages the members that leave their half-octave now that one more is here. The age of member j is the number here
+// less j.
+func (p *passer) grow() {
+	if p.plain {
+		return
+	}
+	p.ageDue.drain(p.here, func(j int32) {
+		p.unset(j)
+		p.ageClass[j] = classOf(p.here - int(j))
+		p.set(j)
+		p.ageDue.put(int(j)+leaves(p.ageClass[j]), j)
+	})
+}
+
+// A calendar holds members under the moment they are due.
+type calendar struct {
+	head  []int32
+	node  []struct{ member, next int32 }
+	spare int32 // first of the nodes free for use
+}
+
+func newCalendar(moments int) calendar {
+	c := calendar{head: make([]int32, moments), spare: -1}
+	for i := range c.head {
+		c.head[i] = -1
+	}
+	return c
+}
+
+func (c *calendar) put(at int, j int32) {
+	if at >= len(c.head) {
+		return
+	}
+	k := c.spare
+	if k >= 0 {
+		c.spare = c.node[k].next
+	} else {
+		k = int32(len(c.node))
+		c.node = append(c.node, struct{ member, next int32 }{})
+	}
+	c.node[k].member, c.node[k].next = j, c.head[at]
+	c.head[at] = k
+}
+
+// drain calls f for the members due, and empties the moment; f may put members under later ones.
+func (c *calendar) drain(at int, f func(j int32)) {
+	k := c.head[at]
+	c.head[at] = -1
+	for k >= 0 {
+		next := c.node[k].next
+		f(c.node[k].member)
+		c.node[k].next = c.spare
+		c.spare = k
+		k = next
+	}
+}
