@@ -1,6 +1,10 @@
 package bose
 
-import "math"
+import (
+	"math"
+
+	"preponder/sim/law"
+)
 
 // Curves are what the page draws of one solution.
 type Curves struct {
@@ -10,6 +14,24 @@ type Curves struct {
 
 // curvePoints over energies, muPoints over sharpness.
 const curvePoints, muPoints = 160, 56
+
+// CurvesOf returns the curves of any law; one without a ground level has a density only.
+func CurvesOf(l law.Law, beta float64, rule Rule, sol Solution) Curves {
+	low, high := l.Support()
+	if math.IsInf(low, -1) {
+		var c Curves
+		a, b := l.Quantile(0.003), l.Quantile(0.997)
+		for i := range curvePoints {
+			e := a + (b-a)*float64(i)/(curvePoints-1)
+			c.Eps, c.Density = append(c.Eps, e), append(c.Density, l.Density(e))
+		}
+		return c
+	}
+	if low == high {
+		return Curves{}
+	}
+	return NewSpectrum(l).Curves(beta, rule, sol)
+}
 
 // Curves returns the law, f, n over its energies, and mu over sharpness from 0 to twice what matters.
 func (s *Spectrum) Curves(beta float64, rule Rule, sol Solution) Curves {

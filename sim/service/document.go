@@ -1,0 +1,94 @@
+package service
+
+import (
+	"encoding/json"
+	"fmt"
+
+	"preponder/sim/casebook"
+	"preponder/sim/evidence"
+	"preponder/sim/growth"
+	"preponder/sim/law"
+	"preponder/sim/wire"
+)
+
+// tables answers with what the page draws its controls from, and the demo casebook.
+func tables(*Engine, wire.Packet, Step) (reply, error) {
+	return reply{body: map[string]any{
+		"families": law.Families, "levers": growth.Levers, "caution": evidence.Caution,
+		"demo": casebook.Demo(), "demoOpen": casebook.DemoOpen, "newEntry": casebook.NewEntry(),
+		"limits": map[string]any{"members": growth.MaxMembers, "links": growth.MaxLinks, "sharpness": casebook.MaxSharpness, "runs": casebook.MaxRuns,
+			"rows": evidence.MaxRows, "bytes": evidence.MaxBytes, "code": casebook.MaxCode, "title": casebook.MaxTitle, "note": casebook.MaxNote},
+	}}, nil
+}
+
+// open reads a case file from the column "file".
+func open(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	data := p.Column("file").Bytes
+	if len(data) > 16<<20 {
+		return reply{}, fmt.Errorf("the case file has %d MiB; 16 are allowed", len(data)>>20)
+	}
+	c, err := casebook.Read(data)
+	return reply{body: map[string]any{"casebook": c}}, err
+}
+
+// decode reads a code or a link.
+func decode(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	var ask struct {
+		Code string `json:"code"`
+	}
+	if err := json.Unmarshal(p.Body, &ask); err != nil {
+		return reply{}, err
+	}
+	c, err := casebook.Decode(ask.Code)
+	return reply{body: map[string]any{"casebook": c}}, err
+}
+
+type document struct {
+	Casebook json.RawMessage `json:"casebook"`
+	Names    bool            `json:"names"`
+}
+
+func (d document) read() (casebook.Casebook, error) { return casebook.Read(d.Casebook) }
+
+// encode answers with the code of a casebook and what it holds. Names of members stay out unless asked for.
+func encode(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	var d document
+	if err := json.Unmarshal(p.Body, &d); err != nil {
+		return reply{}, err
+	}
+	c, err := d.read()
+	if err != nil {
+		return reply{}, err
+	}
+	holds := fmt.Sprintf("%d entries with their titles and notes", len(c.Entries))
+	if len(c.Entries) == 1 {
+		holds = "one entry with its title and note"
+	}
+	if c.Evidence != nil {
+		if !d.Names {
+			c.Evidence = c.Evidence.Masked()
+			holds += ", and the evidence in condensed form: counts, estimates and shares, members by order of arrival, no name and no single link"
+		} else {
+			holds += fmt.Sprintf(", and the evidence in condensed form, with the names of the %d largest members", len(c.Evidence.Top))
+		}
+	}
+	code, err := c.Code()
+	return reply{body: map[string]any{"code": code, "holds": holds}}, err
+}
+
+// file answers with the case file.
+func file(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	var d document
+	if err := json.Unmarshal(p.Body, &d); err != nil {
+		return reply{}, err
+	}
+	c, err := d.read()
+	if err != nil {
+		return reply{}, err
+	}
+	if c.Evidence != nil && !d.Names {
+		c.Evidence = c.Evidence.Masked()
+	}
+	b, err := c.File()
+	return reply{columns: []wire.Column{{Name: "file", Bytes: b}}}, err
+}

@@ -1,0 +1,338 @@
+package service
+
+import (
+	"bytes"
+	"encoding/json"
+	"fmt"
+	"math"
+	"strconv"
+
+	"preponder/sim/bose"
+	"preponder/sim/casebook"
+	"preponder/sim/growth"
+	"preponder/sim/law"
+	"preponder/sim/share"
+	"preponder/sim/standing"
+	"preponder/sim/wire"
+)
+
+// An entryRequest asks about one entry of a casebook.
+type entryRequest struct {
+	Casebook json.RawMessage `json:"casebook"`
+	Entry    int             `json:"entry"` // from 0
+	Curves   bool            `json:"curves"`
+	Columns  bool            `json:"columns"`
+	Digest   bool            `json:"digest"`
+}
+
+func entryOf(p wire.Packet) (entryRequest, casebook.Casebook, error) {
+	var ask entryRequest
+	if err := json.Unmarshal(p.Body, &ask); err != nil {
+		return ask, casebook.Casebook{}, err
+	}
+	c, err := casebook.Read(ask.Casebook)
+	if err == nil && (ask.Entry < 0 || ask.Entry >= len(c.Entries)) {
+		err = fmt.Errorf("there is no entry %d; the casebook has %d", ask.Entry+1, len(c.Entries))
+	}
+	return ask, c, err
+}
+
+// Solved is the standing of an entry in endless growth.
+type Solved struct {
+	Regime            bose.Regime      `json:"regime"`
+	Reason            string           `json:"reason,omitempty"`
+	Balance           wire.Num         `json:"balance"`
+	GroundIntegral    wire.Num         `json:"groundIntegral"`
+	Margin            wire.Num         `json:"margin"`
+	Mu                wire.Num         `json:"mu"`
+	BetaMu            wire.Num         `json:"betaMu"`
+	Condensate        wire.Num         `json:"condensate"`
+	LeaderExponent    wire.Num         `json:"leaderExponent"`
+	Halving           wire.Num         `json:"halving"`
+	CriticalSharpness wire.Num         `json:"criticalSharpness"`
+	MeanFitness       wire.Num         `json:"meanFitness"`
+	Dissolve          Dissolve         `json:"dissolve"`
+	Verdict           standing.Verdict `json:"verdict"`
+	Curves            *Curves          `json:"curves,omitempty"`
+}
+
+// Dissolve are the levers that alone dissolve a condensate.
+type Dissolve struct {
+	HeadStart wire.Num `json:"headStart"`
+	OpenShare wire.Num `json:"openShare"`
+}
+
+// Curves for the page.
+type Curves struct {
+	Eps        []wire.Num `json:"eps"`
+	Density    []wire.Num `json:"density"`
+	Exponent   []wire.Num `json:"exponent"`
+	Occupation []wire.Num `json:"occupation"`
+	Pull       []wire.Num `json:"pull"` // log10 of fitness over its mean
+	Beta       []wire.Num `json:"beta"`
+	BetaMu     []wire.Num `json:"betaMuOver"`
+	Levels     []Level    `json:"levels"` // of a discrete law
+}
+
+// Level of a discrete law.
+type Level struct {
+	Eps    wire.Num `json:"eps"`
+	Weight wire.Num `json:"weight"`
+}
+
+// solve answers with the standing of an entry.
+func solve(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	ask, c, err := entryOf(p)
+	if err != nil {
+		return reply{}, err
+	}
+	e := c.Entries[ask.Entry]
+	l, beta := c.LawOf(ask.Entry)
+	rule := bose.Rule{Links: e.Growth.Links, HeadStart: e.Growth.HeadStart, OpenShare: e.Growth.OpenShare}
+	s, err := bose.Solve(l, beta, rule)
+	if err != nil {
+		return reply{}, err
+	}
+	v := standing.Describe(standing.Facts{Solution: s, Ceiling: e.Growth.Ceiling, Distinct: e.Growth.Distinct, Links: e.Growth.Links, Late: e.Growth.LeversFrom})
+	out := Solved{Regime: v.Regime, Reason: v.Reason, Balance: wire.Num(s.Balance), GroundIntegral: wire.Num(s.GroundIntegral), Margin: wire.Num(s.Margin),
+		Mu: wire.Num(s.Mu), BetaMu: wire.Num(s.BetaMu), Condensate: wire.Num(s.Condensate), LeaderExponent: wire.Num(s.LeaderExponent), Halving: wire.Num(s.Halving),
+		CriticalSharpness: wire.Num(s.CriticalSharpness), MeanFitness: wire.Num(s.MeanFitness),
+		Dissolve: Dissolve{wire.Num(s.DissolveHeadStart), wire.Num(s.DissolveOpenShare)}, Verdict: v}
+	if ask.Curves {
+		out.Curves = curvesOf(l, beta, rule, s)
+	}
+	return reply{body: out}, nil
+}
+
+func curvesOf(l law.Law, beta float64, rule bose.Rule, s bose.Solution) *Curves {
+	c := bose.CurvesOf(l, beta, rule, s)
+	out := &Curves{Eps: wire.Nums(c.Eps), Density: wire.Nums(c.Density), Exponent: wire.Nums(c.Exponent), Occupation: wire.Nums(c.Occupation), Beta: wire.Nums(c.Beta), BetaMu: wire.Nums(c.Mu), Levels: []Level{}}
+	for _, e := range c.Eps {
+		out.Pull = append(out.Pull, wire.Num((-beta*e-math.Log(s.MeanFitness))/math.Ln10))
+	}
+	if levels, ok := l.(law.Leveled); ok {
+		energy, weight := levels.Levels()
+		for i := range energy {
+			out.Levels = append(out.Levels, Level{wire.Num(energy[i]), wire.Num(weight[i])})
+		}
+	}
+	return out
+}
+
+// Grown is a network in figures.
+type Grown struct {
+	Members     int           `json:"members"`
+	From        int           `json:"from"`
+	Links       int           `json:"links"`
+	Leader      Leader        `json:"leader"`
+	Top4        float64       `json:"top4"`
+	HHI         float64       `json:"hhi"`
+	Gini        float64       `json:"gini"`
+	LeadChanges int           `json:"leadChanges"`
+	MuAtSize    wire.Num      `json:"muAtSize"`
+	BetaMu      wire.Num      `json:"betaMuAtSize"`
+	Digest      string        `json:"digest,omitempty"`
+	Ranking     []Standing    `json:"ranking,omitempty"`
+	Reigns      []share.Reign `json:"reigns,omitempty"`
+	Path        *Path         `json:"path,omitempty"`
+	Counted     []Counted     `json:"counted,omitempty"`
+}
+
+// Leader of a network.
+type Leader struct {
+	ID      string  `json:"id"`
+	Share   float64 `json:"share"`
+	Energy  float64 `json:"energy"`
+	Arrived int     `json:"arrived"`
+}
+
+// Standing of one of the largest members.
+type Standing struct {
+	ID     string  `json:"id"`
+	Member int32   `json:"member"`
+	Share  float64 `json:"share"`
+	Energy float64 `json:"energy"`
+}
+
+// Path is shares over size; Followed those of the members in Ranking.
+type Path struct {
+	Members  []int32     `json:"members"`
+	Leader   []int32     `json:"leader"`
+	Share    []float64   `json:"share"`
+	Top4     []float64   `json:"top4"`
+	HHI      []float64   `json:"hhi"`
+	Followed [][]float64 `json:"followed"`
+}
+
+// Counted is the occupation counted among members of like energy, with its standard error.
+type Counted struct {
+	Eps     float64 `json:"eps"`
+	N       float64 `json:"n"`
+	Error   float64 `json:"error"`
+	Members int     `json:"members"`
+}
+
+const pathPoints, followed = 120, 5
+
+// grow answers with the network of an entry; its columns go to the stage.
+func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
+	ask, c, err := entryOf(p)
+	if err != nil {
+		return reply{}, err
+	}
+	n, err := growth.Grow(c.Params(ask.Entry), func(done float64) error { return step(0.9*done, "growing the network") })
+	if err != nil {
+		return reply{}, err
+	}
+	e.network = n
+	received := n.Received(n.Members)
+	s := share.Of(received)
+	betaMu := n.BetaMu(received)
+	name := namer(c, n.From())
+	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
+		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], s.Leader}}
+	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))])
+	out.LeadChanges = path.LeadChanges()
+	if ask.Digest {
+		out.Digest = n.Digest()
+	}
+	r := reply{}
+	if ask.Columns {
+		for _, j := range s.Ranking {
+			out.Ranking = append(out.Ranking, Standing{name(int(j)), j, float64(received[j]) / float64(s.Links), n.Energy[j]})
+		}
+		out.Reigns = path.Reigns
+		out.Path = &Path{path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Followed}
+		out.Counted = counted(n, received)
+		r.columns = columns(n)
+	}
+	r.body = out
+	return r, nil
+}
+
+// namer names members: those of evidence by their ids, others M and their number.
+func namer(c casebook.Casebook, from int) func(j int) string {
+	return func(j int) string {
+		if from > 1 && c.Evidence != nil {
+			if j < len(c.Evidence.Top) {
+				return c.Evidence.Top[j].ID
+			}
+			if j < from {
+				return fmt.Sprintf("one of %d", from)
+			}
+		}
+		return "M" + strconv.Itoa(j)
+	}
+}
+
+// columns are what the stage draws: targets, rank in the law, log10 of the pull over its mean; links before each member
+// where they are no plain multiple.
+func columns(n *growth.Network) []wire.Column {
+	least := math.Inf(1)
+	for _, e := range n.Energy {
+		least = math.Min(least, e)
+	}
+	sum := 0.0
+	for _, e := range n.Energy {
+		sum += math.Exp(-n.Sharpness * (e - least))
+	}
+	shift := math.Log(sum / float64(n.Members))
+	pull := make([]float32, n.Members)
+	for j, e := range n.Energy {
+		pull[j] = float32((-n.Sharpness*(e-least) - shift) / math.Ln10)
+	}
+	before := make([]int32, n.Members+1)
+	for v := range before {
+		before[v] = int32(n.LinksBefore(v))
+	}
+	return []wire.Column{{Name: "targets", Int32: n.Targets}, {Name: "before", Int32: before}, {Name: "rank", Float32: n.Rank}, {Name: "pull", Float32: pull}}
+}
+
+// edges of the bins in which links are counted: shares of the law from the fittest on.
+var edges = []float64{0, .001, .003, .01, .02, .04, .07, .11, .16, .22, .3, .4, .5, .6, .7, .8, .9, 1}
+
+// counted returns the occupation of each bin of energy,
+//
+//	n = (mean links received - m r) / (m (1 + r) + a).
+func counted(n *growth.Network, received []int32) []Counted {
+	type bin struct{ members, links, square, eps float64 }
+	bins := make([]bin, len(edges)-1)
+	for j, d := range received {
+		k := 0
+		for k+2 < len(edges) && float64(n.Rank[j]) >= edges[k+1] {
+			k++
+		}
+		b := &bins[k]
+		b.members++
+		b.links += float64(d)
+		b.square += float64(d) * float64(d)
+		b.eps += n.Energy[j]
+	}
+	unit := n.Links*(1+n.OpenShare) + n.HeadStart
+	out := []Counted{}
+	for _, b := range bins {
+		if b.members == 0 {
+			continue
+		}
+		mean := b.links / b.members
+		spread := math.Sqrt(math.Max(0, b.square/b.members-mean*mean) / b.members)
+		out = append(out, Counted{b.eps / b.members, (mean - n.Links*n.OpenShare) / unit, spread / unit, int(b.members)})
+	}
+	return out
+}
+
+// member answers with what is known of one member of the network grown last, among its first "size" members.
+func member(e *Engine, p wire.Packet, _ Step) (reply, error) {
+	var ask struct {
+		Member, Size int
+	}
+	if err := json.Unmarshal(p.Body, &ask); err != nil {
+		return reply{}, err
+	}
+	n := e.network
+	if n == nil || ask.Member < 0 || ask.Size > n.Members || ask.Member >= ask.Size {
+		return reply{}, fmt.Errorf("there is no member %d in a network of %d", ask.Member, ask.Size)
+	}
+	received := n.Received(ask.Size)
+	rank, links := 1, n.LinksBefore(ask.Size)
+	mean := 0.0
+	for j, d := range received {
+		if d > received[ask.Member] || (d == received[ask.Member] && j < ask.Member) {
+			rank++
+		}
+		mean += math.Exp(-n.Sharpness * (n.Energy[j] - n.Energy[ask.Member]))
+	}
+	chose := []int32{}
+	if ask.Member >= n.From() || n.From() == 1 {
+		chose = n.Targets[n.LinksBefore(ask.Member):n.LinksBefore(ask.Member+1)]
+	}
+	return reply{body: map[string]any{
+		"links": received[ask.Member], "share": float64(received[ask.Member]) / math.Max(1, float64(links)), "rank": rank, "of": ask.Size,
+		"energy": n.Energy[ask.Member], "within": n.Rank[ask.Member], "pull": float64(ask.Size) / mean, "chose": chose, "arrived": ask.Member,
+	}}, nil
+}
+
+// export answers with the network grown last as a link log: time, source, target.
+func export(e *Engine, p wire.Packet, step Step) (reply, error) {
+	if e.network == nil {
+		return reply{}, fmt.Errorf("no network has been grown yet")
+	}
+	b, err := linkLog(e.network, step)
+	return reply{columns: []wire.Column{{Name: "file", Bytes: b}}}, err
+}
+
+func linkLog(n *growth.Network, step Step) ([]byte, error) {
+	var b bytes.Buffer
+	b.WriteString("time,source,target\r\n")
+	for v := n.From(); v < n.Members; v++ {
+		if v%4096 == 0 {
+			if err := step(float64(v)/float64(n.Members), "writing the log"); err != nil {
+				return nil, err
+			}
+		}
+		for _, j := range n.Targets[n.LinksBefore(v):n.LinksBefore(v+1)] {
+			fmt.Fprintf(&b, "%d,M%d,M%d\r\n", v, v, j)
+		}
+	}
+	return b.Bytes(), nil
+}
