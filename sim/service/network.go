@@ -248,6 +248,14 @@ func columns(n *growth.Network) []wire.Column {
 	return []wire.Column{{Name: "targets", Int32: n.Targets}, {Name: "before", Int32: before}, {Name: "rank", Float32: n.Rank}, {Name: "pull", Float32: pull}}
 }
 
+// Columns returns what there is to draw of the network grown last, and the members it began with; nil before any.
+func (e *Engine) Columns() ([]wire.Column, int) {
+	if e.network == nil {
+		return nil, 0
+	}
+	return columns(e.network), e.network.From()
+}
+
 // edges of the bins in which links are counted: shares of the law from the fittest on.
 var edges = []float64{0, .001, .003, .01, .02, .04, .07, .11, .16, .22, .3, .4, .5, .6, .7, .8, .9, 1}
 

@@ -1,0 +1,203 @@
+// Package scene arranges a network as the level disc: plain values in, plain shapes out. It draws nothing and knows no
+// engine.
+//
+// A member lies at angle i pi (3 - sqrt 5) - pi/2 and radius
+//
+//	r = R sqrt(0.7 q + 0.3 q^0.35)
+//
+// where q is the share of the law that is fitter (levels) or the share of members that came earlier (arrivals). The crowd
+// is nearly even, the middle open, and a change of arrangement slides dots along their own ray.
+package scene
+
+import "math"
+
+// Columns are a network as the engine sends it.
+type Columns struct {
+	Targets []int32   // of each link
+	Before  []int32   // links before each member, and all of them at the end
+	Rank    []float32 // share of the law fitter than the member
+	Pull    []float32 // log10 of its pull over the mean
+	From    int       // members the growth began with; links among them have no known chooser
+}
+
+// Members returns how many members the columns hold.
+func (c Columns) Members() int { return len(c.Rank) }
+
+// A View says what is wanted of them.
+type View struct {
+	Width, Height float64 // pixels
+	Scale         float64 // pixels per CSS pixel
+	Members       int     // how much of the growth
+	Arrival       float64 // 0 levels, 1 arrivals, between: on the way
+	Strokes       int     // budget
+	Zoom          float64 // 1 or more
+	PanX, PanY    float64 // of the disc's centre, in its radii
+	Ceiling       float64 // 0 = none
+	Following     int     // member followed, -1 = none
+	Bare          bool    // no room for rulers: small pictures
+}
+
+// A Disc is a member with a dot of its own.
+type Disc struct {
+	Member  int32
+	X, Y, R float64
+	Tone    float64 // 0 strong to 1 weak
+	Share   float64
+	Leader  bool
+	Capped  bool
+	Faint   bool // no link received
+}
+
+// A Stroke is ink between two points, tapering in width, in the colour of the member it leads to.
+type Stroke struct {
+	X0, Y0, X1, Y1 float64
+	W0, W1         float64
+	Alpha          float64
+	Tone           float64
+	Ember          bool
+	Ink            bool
+}
+
+// A Picture is everything there is to paint, in paint order by slice.
+type Picture struct {
+	CX, CY, R    float64
+	Scale        float64
+	Wash         []float64 // alpha of 20 rings, from the middle
+	Grain        []Grain
+	Rings        []float64 // radii of the level rings
+	Under        []Stroke  // whole links of small networks
+	Strokes      []Stroke
+	Spokes       []Stroke
+	Discs        []Disc // by share, smallest first, the leader last
+	Leader       int    // index in Discs, -1 = none
+	OneStrokeFor float64
+	Links        int
+	Label        Label
+}
+
+// Grain is a member of the crowd: one pixel.
+type Grain struct {
+	X, Y   float64
+	Weight float64
+	Tone   float64
+}
+
+// RingShares are the shares of the law the rings stand for.
+var RingShares = []float64{0.0001, 0.001, 0.01, 0.1, 0.5}
+
+// Radius returns r/R for q in [0, 1].
+func Radius(q float64) float64 { return math.Sqrt(0.7*q + 0.3*math.Pow(q, 0.35)) }
+
+// golden is the angle between members one after another.
+var golden = math.Pi * (3 - math.Sqrt(5))
+
+// Tone returns the place on the colour ramp of a pull, given as log10 over the mean.
+func Tone(pull float64) float64 {
+	return math.Max(0, math.Min(1, 0.56-math.Copysign(0.37*math.Pow(math.Abs(pull), 0.6), pull)))
+}
+
+// A layout places members for one view.
+type layout struct {
+	c        Columns
+	v        View
+	n        int
+	links    int
+	received []int32
+	cx, cy   float64
+	r        float64 // radius of the disc with zoom
+	dot      float64 // radius a share of 1 would have
+	seat     map[int32]float64
+	top      int32
+}
+
+func newLayout(c Columns, v View) *layout {
+	n := max(0, min(v.Members, c.Members()))
+	l := &layout{c: c, v: v, n: n, seat: map[int32]float64{}, top: -1}
+	if n > 0 {
+		l.links = int(c.Before[n])
+	}
+	l.received = make([]int32, n)
+	for _, j := range c.Targets[:l.links] {
+		l.received[j]++
+	}
+	for j, d := range l.received {
+		if d > 0 && (l.top < 0 || d > l.received[l.top]) {
+			l.top = int32(j)
+		}
+	}
+	r := Fit(v)
+	z := math.Max(1, v.Zoom)
+	l.r = r * z
+	l.cx = v.Width/2 + v.PanX*l.r
+	l.cy = v.Height/2 + v.PanY*l.r
+	if !v.Bare {
+		l.cx -= 0
+		l.cy -= 18 * v.Scale
+	}
+	l.dot = r * math.Sqrt(0.03) * math.Sqrt(z)
+	return l
+}
+
+// Fit returns the radius of the disc that fits the view.
+func Fit(v View) float64 {
+	if v.Bare {
+		return math.Max(4, math.Min(v.Width, v.Height)/2-1)
+	}
+	return math.Max(20, math.Min(v.Height/v.Scale-62, v.Width/v.Scale-24)/2-10) * v.Scale
+}
+
+func (l *layout) share(j int32) float64 {
+	if l.links == 0 {
+		return 0
+	}
+	return float64(l.received[j]) / float64(l.links)
+}
+
+// polar returns radius (of the disc) and angle of a member.
+func (l *layout) polar(j int32) (r, angle float64) {
+	a := l.v.Arrival
+	if a < 1 {
+		r = (1 - a) * Radius(float64(l.c.Rank[j]))
+	}
+	if a > 0 {
+		r += a * Radius((float64(j)+0.5)/float64(l.n))
+	}
+	angle = math.Mod(float64(j)*golden, 2*math.Pi) - math.Pi/2
+	if turn, ok := l.seat[j]; ok {
+		angle += turn
+	}
+	return r, angle
+}
+
+func (l *layout) place(j int32) (x, y float64) {
+	r, a := l.polar(j)
+	s, c := math.Sincos(a)
+	return l.cx + l.r*r*c, l.cy + l.r*r*s
+}
+
+// radius returns the radius of a member's dot in pixels.
+func (l *layout) radius(j int32) float64 {
+	floor := 0.8
+	switch {
+	case l.n <= 1000:
+		floor = 1.7
+	case l.n <= 5000:
+		floor = 1.0
+	}
+	if j == l.top {
+		floor = 4
+	}
+	if l.v.Bare {
+		floor = 0.8
+	}
+	return math.Max(floor*l.v.Scale, l.dot*math.Sqrt(l.share(j)))
+}
+
+// hash is a small mixer for choices that must not beat against the golden angle.
+func hash(x uint64) float64 {
+	x *= 0x9E3779B97F4A7C15
+	x ^= x >> 31
+	x *= 0xBF58476D1CE4E5B9
+	x ^= x >> 29
+	return float64(x>>11) / (1 << 53)
+}
