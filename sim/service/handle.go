@@ -49,7 +49,7 @@ func init() {
 	kinds = map[string]handler{
 		"tables": tables, "open": open, "decode": decode, "encode": encode, "file": file,
 		"solve": solve, "grow": grow, "member": member, "export": export,
-		"look": look, "read": read, "study": study, "sample": sample,
+		"look": look, "read": read, "study": study, "words": words, "sample": sample,
 		"outlook": runOutlook, "gather": gather,
 	}
 }

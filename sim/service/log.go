@@ -93,6 +93,21 @@ func study(e *Engine, _ wire.Packet, step Step) (reply, error) {
 	return reply{body: body}, nil
 }
 
+// words answers with heading and meaning of evidence kept in a casebook.
+func words(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	var ask struct {
+		Evidence *evidence.Condensed `json:"evidence"`
+	}
+	if err := json.Unmarshal(p.Body, &ask); err != nil {
+		return reply{}, err
+	}
+	if ask.Evidence == nil {
+		return reply{}, errors.New("there is no evidence to speak of")
+	}
+	heading, meaning := ask.Evidence.Words()
+	return reply{body: map[string]any{"heading": heading, "meaning": meaning, "explained": ask.Evidence.Rule.Explained()}}, nil
+}
+
 // entryFrom is the entry a log opens with: its network as it stands, planned to grow fourfold.
 func entryFrom(c *evidence.Condensed) casebook.Entry {
 	e := casebook.NewEntry()

@@ -1,0 +1,108 @@
+// The brief: what is printed, and its place among the sections.
+import { signal } from "@preact/signals";
+import type { JSX } from "preact";
+import { fan, shares, track } from "../charts/charts";
+import { useLayoutEffect, useRef } from "preact/hooks";
+import { current, doc, tables } from "../state/document";
+import { grown, solved } from "../state/results";
+import type { Entry } from "../state/types";
+import { count, number, percent, range } from "../words/format";
+import { evidenceWords, Origin } from "./evidence";
+import { outlookOf, Section } from "./sections";
+
+export const preparedFor = signal("");
+/** The picture for paper, as a data address, and the code of the casebook. */
+export const briefPicture = signal<string | undefined>(undefined);
+export const briefCode = signal<string | undefined>(undefined);
+
+export function Brief(): JSX.Element {
+  return (
+    <Section id="brief" title="Brief" aside={<button type="button" onClick={() => window.print()}>Print</button>}>
+      <p class="says">One page on paper: picture, verdict, figures, what is assumed, the caution and the code that reopens this casebook. Print to PDF to hand it round.</p>
+      <label class="field">Prepared for <input type="text" value={preparedFor.value} onInput={(e) => (preparedFor.value = e.currentTarget.value)} maxLength={200} /></label>
+    </Section>
+  );
+}
+
+function Drawn(p: { draw: (width: number) => Element | undefined; of: unknown }): JSX.Element {
+  const ref = useRef<HTMLDivElement>(null);
+  useLayoutEffect(() => {
+    const chart = p.draw(330);
+    if (chart) ref.current?.replaceChildren(chart);
+  }, [p.of]);
+  return <div ref={ref} aria-hidden="true" />;
+}
+
+function assumptions(e: Entry): string[] {
+  const g = e.growth;
+  const rules = [
+    g.headStart > 0 && `a head start of ${number(g.headStart)} tickets`, g.openShare > 0 && `${percent(g.openShare)} of links dealt to any member alike`, g.ceiling > 0 && `a ceiling of ${percent(g.ceiling)}`, g.distinct && "distinct partners",
+  ].filter(Boolean);
+  const law = `${e.law.family}${Object.entries(e.law).filter(([k, v]) => k !== "family" && typeof v === "number").map(([k, v]) => ` ${k} ${String(v)}`).join(",")}`;
+  return [
+    `Newcomers choose by fitness times tickets (links they bring plus links received), ${number(g.links)} links each; nothing else counts.`,
+    `Law of energies: ${law === "evidence" ? "estimated from the log" : law}; sharpness ${number(e.sharpness)}; seed ${g.seed}.`,
+    rules.length > 0 ? `Rules: ${rules.join(", ")}${g.leversFrom > 0 ? `, from ${count(g.leversFrom)} members on` : ""}.` : "No rule limits the choice.",
+    "Shares are links received over all links. Endless growth is a limit: at any size one member may hold much of what the fittest hold together, and which one differs from run to run.",
+  ];
+}
+
+/** Paper only. */
+export function PrintedBrief(): JSX.Element | null {
+  const c = current.value;
+  const d = doc.value;
+  const s = solved.value?.value;
+  const g = grown.value?.value;
+  if (!c || !d || !s || !g) return null;
+  const e = c.entry;
+  const { outlook: o } = outlookOf(e);
+  const ev = d.book.evidence;
+  const w = evidenceWords.value;
+  return (
+    <section class="paper" aria-label="Brief for print">
+      <header>
+        <p>{d.book.title}{preparedFor.value ? ` — prepared for ${preparedFor.value}` : ""}</p>
+        <h1>{e.title || "Untitled entry"}</h1>
+        {e.note && <p>{e.note}</p>}
+      </header>
+      <div class="top">
+        {briefPicture.value && <img src={briefPicture.value} alt={`Picture of the network: ${g.leader.id} leads with ${percent(g.leader.share)}`} />}
+        <div>
+          <h2>{s.verdict.heading}</h2>
+          <p>{s.verdict.line} {s.verdict.reason}</p>
+          <table>
+            <tbody>
+              <tr><th scope="row">Leader at {count(g.members)} members</th><td>{g.leader.id}, {percent(g.leader.share)} of links</td></tr>
+              <tr><th scope="row">Top four; HHI</th><td>{percent(g.top4)}; {number(g.hhi)}</td></tr>
+              <tr><th scope="row">Lead changes so far</th><td>{g.leadChanges}</td></tr>
+              <tr><th scope="row">Margin (condensate below 1)</th><td>{number(s.margin)}</td></tr>
+              <tr><th scope="row">Condensate, endless growth</th><td>{percent(s.condensate)} of links, on the fittest few together</td></tr>
+              {s.dissolve.headStart !== null && <tr><th scope="row">Dissolved by, alone</th><td>head start {number(s.dissolve.headStart)} or open share {percent(s.dissolve.openShare ?? 0)}</td></tr>}
+            </tbody>
+          </table>
+        </div>
+      </div>
+      {ev && w && (
+        <div class="part">
+          <h2>The log: {w.heading}</h2>
+          <p>{w.meaning}</p>
+          {ev.check.reasons.slice(ev.verdict === "none" ? 1 : 0).map((r) => <p key={r}>{r}</p>)}
+          <p>{count(ev.rows)} rows read, {count(ev.used)} used; {count(ev.members)} members, {count(ev.links)} links. Leader {ev.top[0]?.id} with {percent((ev.top[0]?.links ?? 0) / Math.max(1, ev.links))}; top four {percent(ev.top4)}; HHI {number(ev.hhi)}.{ev.margin.low !== null ? ` Margin ${number(ev.margin.estimate)}, 95 % ${range(ev.margin)}.` : ""}</p>
+          {ev.top[0] && <Origin m={ev.top[0]} />}
+          {ev.notes.length > 0 && <p>{ev.notes.join(" ")}</p>}
+        </div>
+      )}
+      <div class="charts">
+        {ev && w ? <figure><figcaption>Shares as the log went</figcaption><Drawn of={ev} draw={(x) => track(ev.track, x)} /></figure> : <figure><figcaption>Share of all links over size</figcaption><Drawn of={g} draw={(x) => shares(g, x)} /></figure>}
+        {o && <figure><figcaption>Leader's share to {count(o.horizon)} members, {o.runs} runs</figcaption><Drawn of={o} draw={(x) => fan(o, x)} /></figure>}
+      </div>
+      {o ? <div class="part"><h2>Outlook</h2>{o.sentences.map((x) => <p key={x}>{x}</p>)}</div> : <p>No outlook was run for these settings.</p>}
+      <div class="part">
+        <h2>What is assumed</h2>
+        <ul>{assumptions(e).map((a) => <li key={a}>{a}</li>)}</ul>
+      </div>
+      <p class="caution"><strong>Caution.</strong> {tables.value?.caution}</p>
+      {briefCode.value && <p class="code">Opens again by this code, pasted under “Open”: <code>{briefCode.value}</code></p>}
+    </section>
+  );
+}

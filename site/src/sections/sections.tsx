@@ -1,0 +1,217 @@
+// The sections of the unfolded entry.
+import type { ComponentChildren, JSX } from "preact";
+import { density, exponent, fan, gauge, occupation, potential, shares } from "../charts/charts";
+import { Figure } from "../charts/figure";
+import { Check, Progress, Slider } from "../controls/controls";
+import { beginDrag, current, doc, editEntry, endDrag, tables } from "../state/document";
+import { cancelGrowth, cancelOutlook, growAnyway, openKey, outlookKey, runOutlook } from "../state/edges";
+import { fault, grown, growing, held, outlookFault, outlooks, running, solved, waitingToGrow } from "../state/results";
+import { projection } from "../state/document";
+import type { Entry, Outlook, Solved } from "../state/types";
+import { quick } from "../state/view";
+import { count, number, percent, seconds } from "../words/format";
+
+const begin = (): void => { beginDrag(); quick.value = true; };
+const end = (): void => { endDrag(); quick.value = false; };
+
+export function Section(p: { id: string; title: string; aside?: ComponentChildren; children: ComponentChildren }): JSX.Element {
+  return (
+    <section id={p.id} aria-labelledby={`${p.id}-title`}>
+      <header><h3 id={`${p.id}-title`}>{p.title}</h3>{p.aside && <span class="aside">{p.aside}</span>}</header>
+      {p.children}
+    </section>
+  );
+}
+
+const current_ = (): Solved | undefined => solved.value?.value;
+const setGrowth = (g: Partial<Entry["growth"]>): void => editEntry((e) => ({ ...e, growth: { ...e.growth, ...g } }));
+
+export function LawSection(p: { entry: Entry }): JSX.Element | null {
+  const t = tables.value;
+  const s = current_();
+  if (!t) return null;
+  const { law } = p.entry;
+  const family = t.families.find((f) => f.name === law.family);
+  const choose = (name: string): void => {
+    const f = t.families.find((x) => x.name === name);
+    editEntry((e) => ({ ...e, law: f ? { family: name, ...Object.fromEntries(f.fields.map((x) => [x.name, x.default])) } : { family: name } }));
+  };
+  const leader = grown.value?.value.leader;
+  const mean = s?.curves?.eps;
+  return (
+    <Section id="law" title="Fitness law" aside={family?.formula ?? (law.family === "evidence" ? "read from the log" : "discrete levels")}>
+      {s?.curves && (
+        <Figure
+          title="Density of energies p(ε)" name="law" class="plain"
+          summary={`Energies from ${number(mean?.[0] ?? 0)} to ${number(mean?.at(-1) ?? 0)}; the fittest have energy 0. ${leader ? `The leader ${leader.id} has energy ${number(leader.energy)}.` : ""}`}
+          draw={(w) => density(s.curves!, leader, held.value?.curves, w)}
+          table={() => ({ columns: ["energy", "density"], rows: s.curves!.eps.map((e, i) => [e, s.curves!.density[i] ?? 0]) })}
+        />
+      )}
+      <div class="chips" role="group" aria-label="Family of the law">
+        {t.families.filter((f) => f.listed).map((f) => (
+          <button type="button" key={f.name} aria-pressed={f.name === law.family} title={f.help} onClick={() => choose(f.name)}>{f.title}</button>
+        ))}
+        {doc.value?.book.evidence?.law ? <button type="button" aria-pressed={law.family === "evidence"} onClick={() => choose("evidence")}>From the log</button> : null}
+      </div>
+      {family?.fields.map((f) => (
+        <Slider
+          key={f.name} label={f.label} value={Number(law[f.name] ?? f.default)} low={f.low} high={f.high} slide={f.slide} step={f.step} open={f.open} help={f.help} onBegin={begin} onEnd={end}
+          onChange={(v) => editEntry((e) => ({ ...e, law: { ...e.law, [f.name]: v } }))}
+        />
+      ))}
+      <Slider
+        label="Sharpness β" value={p.entry.sharpness} low={0} high={t.limits.sharpness} slide={[0, 10]} step={0.05} help="how hard newcomers compare fitness; 0 is not at all" onBegin={begin} onEnd={end}
+        onChange={(v) => editEntry((e) => ({ ...e, sharpness: v }))}
+      />
+      <Slider
+        label="Links per newcomer m" value={p.entry.growth.links} low={1} high={t.limits.links} slide={[1, 12]} step={1} help="agreements each newcomer makes" onBegin={begin} onEnd={end}
+        onChange={(v) => setGrowth({ links: v })}
+      />
+      <Slider
+        label="Members" value={p.entry.growth.members} low={2} high={t.limits.members} slide={[100, 1_000_000]} step={1} log whole help="today's size" onBegin={begin} onEnd={end}
+        onChange={(v) => setGrowth({ members: v })}
+      />
+      <Slider label="Seed" value={p.entry.growth.seed} low={0} high={4294967295} slide={[1, 50]} step={1} whole help="another seed is another history of the same rule" onBegin={begin} onEnd={end} onChange={(v) => setGrowth({ seed: v })} />
+    </Section>
+  );
+}
+
+export function StandingSection(p: { entry: Entry }): JSX.Element | null {
+  const s = current_();
+  const g = grown.value?.value;
+  const h = held.value;
+  if (!s) return <Section id="standing" title="Standing"><p>{fault.value ?? "Computing…"}</p></Section>;
+  const sharp = p.entry.sharpness;
+  return (
+    <Section
+      id="standing" title="Standing"
+      aside={<button type="button" aria-pressed={h !== undefined} onClick={() => (held.value = h ? undefined : s)} title="Keeps the present curves as a dashed line to compare with">Hold</button>}
+    >
+      {fault.value && <p class="fault" role="alert">{fault.value}</p>}
+      <p class="verdict" aria-live="polite"><strong>{s.verdict.heading}.</strong> {s.verdict.line} {s.verdict.reason}</p>
+      {s.criticalSharpness !== null && (
+        <Figure
+          title="Margin" name="margin" class="plain" summary={`Margin ${number(s.margin)}: ${s.verdict.margin}. A condensate forms where it is below 1, above sharpness ${number(s.criticalSharpness)}.`}
+          draw={(w) => gauge(s, sharp, w)} table={() => ({ columns: ["quantity", "value"], rows: [["sharpness", sharp], ["critical sharpness", s.criticalSharpness ?? ""], ["margin", s.margin ?? "infinite"]] })}
+        />
+      )}
+      <dl class="pairs">
+        <div><dt>Chemical potential μ</dt><dd>{s.regime === "records" ? "none" : sharp === 0 ? "−∞" : number(s.mu ?? 0)} <small>{s.condensate > 0 ? "at the ground level" : "in endless growth"}</small></dd></div>
+        <div><dt>μ at this size</dt><dd>{sharp === 0 ? "−∞" : number(g?.muAtSize, "not yet")} <small>counted at {count(g?.members ?? 0)}</small></dd></div>
+        <div><dt>Condensate, endless growth</dt><dd>{percent(s.condensate)} <small>of all links</small></dd></div>
+        <div><dt>Margin</dt><dd>{number(s.margin)} <small>condensate below 1</small></dd></div>
+      </dl>
+      <div class="trio">
+        <Figure
+          title="Growth rate f(ε)" name="growth-rate" summary="The exponent with which a member's tickets grow, falling with energy." draw={(w) => exponent(s, g, h, w)}
+          table={() => ({ columns: ["energy", "f"], rows: (s.curves?.eps ?? []).map((e, i) => [e, s.curves?.exponent?.[i] ?? ""]) })}
+        />
+        <Figure
+          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network with one standard error.`} draw={(w) => occupation(s, g, h, w)}
+          table={() => ({ columns: ["energy", "counted n", "standard error", "members"], rows: (g?.counted ?? []).map((c) => [c.eps, c.n, c.error, c.members]) })}
+        />
+        <Figure
+          title="Potential βμ over β" name="potential" summary={`Rises to 0 ${s.criticalSharpness !== null ? `at the critical sharpness ${number(s.criticalSharpness)} and stays there` : "without reaching it: this law has no critical sharpness"}.`} draw={(w) => potential(s, sharp, w)}
+          table={() => ({ columns: ["sharpness", "beta mu"], rows: (s.curves?.beta ?? []).map((b, i) => [b, s.curves?.betaMuOver?.[i] ?? ""]) })}
+        />
+      </div>
+      <p class="caption">Circles: links counted at each level of the network on show. In a condensate they lie above the curve while the ground level is still filling.</p>
+    </Section>
+  );
+}
+
+export function SharesSection(): JSX.Element {
+  const g = grown.value?.value;
+  const busy = growing.value;
+  return (
+    <Section id="shares" title="Shares over size" aside="members, log scale">
+      {waitingToGrow.value && <p>This network is large. <button type="button" onClick={growAnyway}>Grow it</button></p>}
+      {busy && <Progress what="Growing the network" done={busy.done} onCancel={cancelGrowth} />}
+      {g && (
+        <>
+          <Figure
+            title="Share of all links" name="shares" class="plain" summary={`${g.leader.id} leads with ${percent(g.leader.share)} at ${count(g.members)} members; ${g.leadChanges} lead changes that lasted.`}
+            draw={(w) => shares(g, w)}
+            table={() => ({ columns: ["members", "leader's share", "top four", "HHI", ...g.ranking.slice(0, g.path.followed.length).map((r) => r.id)], rows: g.path.members.map((n, i) => [n, g.path.share[i] ?? 0, g.path.top4[i] ?? 0, g.path.hhi[i] ?? 0, ...g.path.followed.map((f) => f[i] ?? 0)]) })}
+            note="Dashed: whoever leads. Marks at the top: the lead changed for good (for 5 % of growth at least)."
+          />
+          <dl class="pairs">
+            <div><dt>Top four together (CR4)</dt><dd>{percent(g.top4)}</dd></div>
+            <div><dt>HHI</dt><dd>{number(g.hhi)} <small>points of 10,000</small></dd></div>
+            <div><dt>Gini of links received</dt><dd>{number(g.gini)}</dd></div>
+            <div><dt>Lead changes</dt><dd>{g.leadChanges}</dd></div>
+          </dl>
+        </>
+      )}
+    </Section>
+  );
+}
+
+/** The outlook that belongs to the open entry, and whether its settings were changed since. */
+export function outlookOf(e: Entry): { outlook: Outlook | undefined; key: string } {
+  const d = doc.value;
+  const key = d ? outlookKey(projection(d.book, e), e) : "";
+  return { outlook: outlooks.value.get(key), key };
+}
+
+export function OutlookSection(p: { entry: Entry }): JSX.Element {
+  const t = tables.value;
+  const { outlook: o, key } = outlookOf(p.entry);
+  const run = running.value;
+  const mine = run?.key === key;
+  const left = run && run.done > 0 ? ((performance.now() - run.since) / 1000 / run.done) * (run.of - run.done) : undefined;
+  const set = (x: Partial<Entry["outlook"]>): void => editEntry((e) => ({ ...e, outlook: { ...e.outlook, ...x } }));
+  return (
+    <Section id="outlook" title="Outlook" aside={o ? `leader's share, ${o.runs} runs` : "not run yet for these settings"}>
+      <Slider label="Planned size" value={p.entry.outlook.horizon} low={2} high={t?.limits.members ?? 1e7} slide={[1000, 1_000_000]} step={1} log whole unit="members" help="how far to grow on from today" onBegin={begin} onEnd={end} onChange={(v) => set({ horizon: v })} />
+      <Slider label="Limit" value={p.entry.outlook.limit} low={0} high={1} slide={[0, 1]} step={0.01} unit="share of all links" help="your own limit for one member" onBegin={begin} onEnd={end} onChange={(v) => set({ limit: v })} />
+      <Slider label="Runs" value={p.entry.outlook.runs} low={1} high={t?.limits.runs ?? 10000} slide={[20, 1000]} step={10} whole help="more runs, surer figures" onBegin={begin} onEnd={end} onChange={(v) => set({ runs: v })} />
+      {run ? (
+        <Progress what={`${run.done} of ${run.of} runs made${mine ? "" : " for another entry"}`} done={run.done / run.of} left={left === undefined ? undefined : seconds(left)} onCancel={cancelOutlook} />
+      ) : (
+        <p class="buttons"><button type="button" onClick={() => void runOutlook()}>{o ? "Run again" : "Run the outlook"}</button></p>
+      )}
+      {outlookFault.value && <p class="fault" role="alert">{outlookFault.value}</p>}
+      {o && (
+        <>
+          {o.runs < p.entry.outlook.runs && <p class="caption">Partial: {o.runs} of {p.entry.outlook.runs} runs.</p>}
+          <Figure
+            title="Leader's share from today to the planned size" name="outlook" class="plain" summary={o.sentences.join(" ")} draw={(w) => fan(o, w)}
+            table={() => ({ columns: ["members", "2.5 %", "10 %", "median", "90 %", "97.5 %", "mean"], rows: o.bySize.map((b) => [b.members, b.q025, b.q10, b.q50, b.q90, b.q975, b.mean]) })}
+            note="Bands: 95 and 80 of 100 runs. Whoever leads at each size."
+          />
+          <div id="outlook-says">{o.sentences.map((x) => <p key={x} class="says">{x}</p>)}</div>
+          <dl class="pairs">
+            <div><dt>Top four at {count(o.horizon)}</dt><dd>{percent(o.top4.q50)} <small>{percent(o.top4.q025)} to {percent(o.top4.q975)}</small></dd></div>
+            <div><dt>HHI at {count(o.horizon)}</dt><dd>{number(o.hhi.q50)} <small>{number(o.hhi.q025)} to {number(o.hhi.q975)}</small></dd></div>
+          </dl>
+        </>
+      )}
+    </Section>
+  );
+}
+
+export function LeversSection(p: { entry: Entry }): JSX.Element | null {
+  const t = tables.value;
+  const s = current_();
+  if (!t) return null;
+  const g = p.entry.growth;
+  return (
+    <Section id="levers" title="Levers" aside="rules that change the choice">
+      {t.levers.map((l) =>
+        l.yes ? (
+          <Check key={l.name} label={l.label} help={l.help} value={Boolean(g[l.name])} onChange={(v) => setGrowth({ [l.name]: v })} />
+        ) : (
+          <Slider key={l.name} label={l.label} value={Number(g[l.name])} low={l.low} high={l.high} slide={l.slide} step={l.step} unit={l.unit} help={l.help} onBegin={begin} onEnd={end} onChange={(v) => setGrowth({ [l.name]: v })} />
+        ),
+      )}
+      <Slider label="In force from" value={g.leversFrom} low={0} high={t.limits.members} slide={[0, 20000]} step={100} whole unit="members" help="0 is from the start; today's size makes it a rule for newcomers to come" onBegin={begin} onEnd={end} onChange={(v) => setGrowth({ leversFrom: v })} />
+      {s && s.dissolve.headStart !== null && s.dissolve.openShare !== null && (
+        <p class="says">Alone, a head start of {number(s.dissolve.headStart)} tickets or an open share of {percent(s.dissolve.openShare)} dissolves this condensate in endless growth.</p>
+      )}
+    </Section>
+  );
+}
+
+export { current, openKey };

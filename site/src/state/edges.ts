@@ -1,0 +1,213 @@
+// Where the document meets the engines: effects that ask, and take answers in.
+import { batch, effect, signal } from "@preact/signals";
+import type { Reply } from "../engine/engine";
+import { column } from "../engine/wire";
+import { current, doc, isDragging, projection, say, tables } from "./document";
+import { engines, digests, fault, grown, growing, outlookFault, outlooks, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
+import { keep, kept } from "./storage";
+import type { Casebook, Grown, Outlook, Solved } from "./types";
+import { shown, theme, follow } from "./view";
+import { percent, count } from "../words/format";
+
+/** Larger networks are grown only when asked for. */
+const unasked = 1_000_000;
+
+/** The bytes of the network on show, for the stage. */
+export const network = signal<Uint8Array<ArrayBuffer> | undefined>(undefined);
+
+/** The question the open entry asks, as text: equal text, equal answer. */
+export function keyOf(book: Casebook): string {
+  return JSON.stringify(book.entries[0]) + (book.evidence ? `|${book.evidence.rows}|${book.evidence.label}` : "");
+}
+
+export function openKey(): string | undefined {
+  const c = current.value;
+  const d = doc.value;
+  return c && d ? keyOf(projection(d.book, c.entry)) : undefined;
+}
+
+function report(e: unknown): void {
+  const s = sentenceOf(e);
+  if (s) fault.value = s;
+}
+
+async function askSolve(book: Casebook, key: string): Promise<void> {
+  try {
+    const r = await engines.main.askNewest<Solved>("solve", { casebook: book, entry: 0, curves: true });
+    if (r) batch(() => { solved.value = { key, value: r.body }; fault.value = undefined; });
+  } catch (e) {
+    report(e);
+  }
+}
+
+let growth: AbortController | undefined;
+
+async function askGrow(book: Casebook, key: string): Promise<void> {
+  const before = grown.peek();
+  growth?.abort();
+  const mine = (growth = new AbortController());
+  try {
+    const r = await engines.main.askNewest<Grown>("grow", { casebook: book, entry: 0, columns: true }, {
+      signal: mine.signal,
+      progress: (p) => { if (p.seconds > 0.3) growing.value = { done: p.done, what: p.what }; },
+    });
+    if (r) takeGrown(r, key, before?.value);
+  } catch (e) {
+    report(e);
+  } finally {
+    if (growth === mine) growing.value = undefined;
+  }
+}
+
+export function cancelGrowth(): void {
+  growth?.abort();
+}
+
+function takeGrown(r: Reply<Grown>, key: string, before: Grown | undefined): void {
+  batch(() => {
+    // A scrubber that stood at the end stays at the end.
+    const atEnd = !before || shown.peek() >= before.members;
+    grown.value = { key, value: r.body };
+    if (atEnd || shown.peek() > r.body.members || shown.peek() < r.body.from) shown.value = r.body.members;
+    if (follow.peek() >= r.body.members) follow.value = -1;
+    network.value = r.bytes;
+    waitingToGrow.value = undefined;
+  });
+}
+
+let asked = "";
+
+function ask(force: boolean): void {
+  const d = doc.value;
+  const c = current.value;
+  if (!d || !c) return;
+  const book = projection(d.book, c.entry);
+  const key = keyOf(book);
+  if (key === asked && !force) return;
+  asked = key;
+  void askSolve(book, key);
+  if (c.entry.growth.members > unasked && !force) {
+    waitingToGrow.value = key;
+    return;
+  }
+  waitingToGrow.value = undefined;
+  void askGrow(book, key);
+}
+
+export const growAnyway = (): void => ask(true);
+
+/** Marks and lines of all entries, one after another, when nothing else is asked. */
+let marking = false;
+async function mark(): Promise<void> {
+  if (marking) return;
+  marking = true;
+  try {
+    for (;;) {
+      const d = doc.peek();
+      const t = theme.peek();
+      const next = d?.book.entries.map((e) => projection(d.book, e)).find((b) => !digests.peek().has(markKey(b, t)));
+      if (!next) return;
+      const digest = await digestOf(next, t);
+      digests.value = new Map([...digests.peek(), [markKey(next, t), digest] as const].slice(-400));
+    }
+  } finally {
+    marking = false;
+  }
+}
+
+export const markKey = (b: Casebook, t: string): string => `${t}|${keyOf(b)}`;
+
+const markSize = 112;
+
+async function digestOf(book: Casebook, t: string): Promise<Digest> {
+  try {
+    const s = await engines.marks.ask<Solved>("solve", { casebook: book, entry: 0 });
+    const large = (book.entries[0]?.growth.members ?? 0) > unasked;
+    if (large) return { heading: s.body.verdict.heading, line: "Not grown yet.", mark: undefined };
+    const g = await engines.marks.ask<Grown>("grow", { casebook: book, entry: 0 });
+    const p = await engines.marks.ask("picture", { width: markSize, height: markSize, scale: 1, members: g.body.members, theme: t, strokes: 700, bare: true });
+    const rgba = column<Uint8Array<ArrayBuffer>>(p, "rgba");
+    const image = rgba && new ImageData(new Uint8ClampedArray(rgba), markSize, markSize);
+    return { heading: s.body.verdict.heading, line: `${g.body.leader.id} leads with ${percent(g.body.leader.share)} at ${count(g.body.members)}.`, mark: image };
+  } catch (e) {
+    return { heading: "Not computed", line: sentenceOf(e) ?? "", mark: undefined };
+  }
+}
+
+/** Outlook: chunks of runs over the pool, gathered as they come. */
+let outlookStop: AbortController | undefined;
+
+export function outlookKey(book: Casebook, e: { outlook: { horizon: number; limit: number; runs: number } }): string {
+  return `${keyOf(book)}|${e.outlook.horizon}|${e.outlook.limit}|${e.outlook.runs}`;
+}
+
+export async function runOutlook(): Promise<void> {
+  const d = doc.peek();
+  const c = current.peek();
+  if (!d || !c || running.peek()) return;
+  const base = projection(d.book, c.entry);
+  const book = { ...base, entries: [{ ...base.entries[0]!, outlook: c.entry.outlook }] };
+  const key = outlookKey(base, c.entry);
+  const stop = (outlookStop = new AbortController());
+  const of = c.entry.outlook.runs;
+  batch(() => {
+    running.value = { key, done: 0, of, since: performance.now() };
+    outlookFault.value = undefined;
+  });
+  const parts: unknown[] = [];
+  let next = 0;
+  let inParts = 0;
+  const gather = async (): Promise<void> => {
+    const r = await engines.main.ask<Outlook>("gather", { parts });
+    outlooks.value = new Map([...outlooks.peek(), [key, r.body] as const].slice(-100));
+  };
+  const work = async (engine: (typeof engines.pool)[number]): Promise<void> => {
+    while (next < of && !stop.signal.aborted) {
+      const from = next;
+      const to = Math.min(of, from + (from < 20 ? 5 : 10));
+      next = to;
+      const r = await engine.ask("outlook", { casebook: book, entry: 0, from, to }, { signal: stop.signal });
+      parts.push(r.body);
+      inParts += to - from;
+      const now = running.peek();
+      if (now) running.value = { ...now, done: inParts };
+      await gather();
+    }
+  };
+  const results = await Promise.allSettled(engines.pool.map(work));
+  const bad = results.find((r) => r.status === "rejected");
+  batch(() => {
+    running.value = undefined;
+    if (bad) outlookFault.value = sentenceOf(bad.reason);
+    if (stop.signal.aborted) say(inParts > 0 ? `Outlook cancelled; the ${inParts} runs made so far are shown.` : "Outlook cancelled before the first run was made.");
+  });
+}
+
+export function cancelOutlook(): void {
+  outlookStop?.abort();
+}
+
+/** Starts all effects. */
+export function connect(): void {
+  effect(() => ask(false));
+  let markTimer = 0;
+  effect(() => {
+    void doc.value;
+    void theme.value;
+    if (!tables.value) return;
+    clearTimeout(markTimer);
+    markTimer = window.setTimeout(() => void mark(), isDragging() ? 900 : 350);
+  });
+  let keepTimer = 0;
+  effect(() => {
+    const d = doc.value;
+    if (!d) return;
+    kept.value = "changed";
+    clearTimeout(keepTimer);
+    keepTimer = window.setTimeout(() => keep(d.id, d.book, d.keys.indexOf(d.open)), 300);
+  });
+  window.addEventListener("pagehide", () => {
+    const d = doc.peek();
+    if (d) keep(d.id, d.book, d.keys.indexOf(d.open));
+  });
+}
