@@ -163,7 +163,8 @@ func (l *layout) label(p *Picture) Label {
 		return Label{}
 	}
 	d := p.Discs[p.Leader]
-	w, h := labelWidth*l.v.Scale, labelHeight*l.v.Scale
+	size := math.Max(1, l.v.Label) * l.v.Scale
+	w, h := labelWidth*size, labelHeight*size
 	out := d.R + 14*l.v.Scale
 	var best Label
 	least := math.Inf(1)

@@ -35,6 +35,7 @@ type View struct {
 	Ceiling       float64 // 0 = none
 	Following     int     // member followed, -1 = none
 	Bare          bool    // no room for rulers: small pictures
+	Label         float64 // size of the leader's plate, 1 on a desk
 }
 
 // A Disc is a member with a dot of its own.

@@ -21,6 +21,7 @@ type Settings struct {
 	Playing bool    `json:"playing"`
 	Still   bool    `json:"still"` // no motion
 	Small   bool    `json:"small"` // a phone: fewer strokes
+	Label   float64 `json:"label"` // size of the leader's plate, 1 on a desk
 }
 
 // An inbox keeps the newest of what came in.

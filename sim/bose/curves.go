@@ -50,12 +50,19 @@ func (s *Spectrum) Curves(beta float64, rule Rule, sol Solution) Curves {
 	}
 	top := muAxis(beta, sol.CriticalSharpness)
 	r := rule.Balance()
+	start, mu := math.NaN(), 0.0
 	for i := 1; i <= muPoints; i++ {
 		b := top * float64(i) / muPoints
-		mu := 0.0
-		if s.GroundIntegral(b, 0) >= r {
+		switch {
+		case b >= sol.CriticalSharpness:
+			mu = 0
+		case i == 1:
 			mu, _ = s.Mu(b, r)
+		default:
+			mu, _ = s.mu(b, r, start, drawnMu)
 		}
+		// beta mu moves little from point to point while mu itself falls like 1/beta at first.
+		start = math.Log(-mu) + math.Log(float64(i)/float64(i+1))
 		c.Beta, c.Mu = append(c.Beta, b), append(c.Mu, b*mu)
 	}
 	return c

@@ -112,23 +112,27 @@ func (s *Spectrum) GroundIntegral(beta, mu float64) float64 {
 	return sum + s.edge.Scale*math.Exp((theta+1)*s.lowest)/(theta+1)/math.Expm1(-beta*mu)
 }
 
-// slope returns the derivative of I with respect to ln(-mu), mu < 0; always negative.
-func (s *Spectrum) slope(beta, mu float64) float64 {
-	sum := 0.0
-	for i, e := range s.eps {
-		x := beta * (e - mu)
+// integralAndSlope returns I and its derivative with respect to ln(-mu), mu < 0; the slope is always negative.
+func (s *Spectrum) integralAndSlope(beta, mu float64) (i, slope float64) {
+	if !s.leveled() {
+		s.reach(math.Min(math.Min(-math.Log(beta), s.top), math.Log(-mu)) - groundReach)
+	}
+	add := func(mass, x float64) {
 		if x > 700 {
-			continue
+			return
 		}
 		u := math.Expm1(x)
-		sum += s.mass[i] * (u + 1) / (u * u)
+		n := mass / u
+		i += n
+		slope += n * (u + 1) / u
+	}
+	for k, e := range s.eps {
+		add(s.mass[k], beta*(e-mu))
 	}
 	if !s.leveled() {
-		x := -beta * mu
-		u := math.Expm1(x)
-		sum += s.edge.Scale * math.Exp((s.edge.Theta+1)*s.lowest) / (s.edge.Theta + 1) * (u + 1) / (u * u)
+		add(s.edge.Scale*math.Exp((s.edge.Theta+1)*s.lowest)/(s.edge.Theta+1), -beta*mu)
 	}
-	return beta * mu * sum
+	return i, beta * mu * slope
 }
 
 // Mean returns E[g(eps)] over the law.

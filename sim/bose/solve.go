@@ -117,29 +117,41 @@ func (s *Solution) lead(f float64) {
 	s.Halving = math.Pow(2, 1/(1-f))
 }
 
+// exact and drawn are the relative steps in ln(-mu) at which the search for mu ends: for figures, and for curves.
+const exactMu, drawnMu = 1e-14, 1e-6
+
 // Mu returns the chemical potential: I(beta, mu) = r, for 0 < r <= I(beta, 0). Newton's method in ln(-mu), kept inside a
 // bracket: -ln(1 + 1/r)/beta is at or below the root, because every energy is >= 0. A root nearer to 0 than 1e-300 is
 // returned as -1e-300.
 func (s *Spectrum) Mu(beta, r float64) (float64, error) {
+	return s.mu(beta, r, math.Log(math.Log1p(1/r)/beta)-1, exactMu)
+}
+
+// mu searches from ln(-mu) = start until a step is smaller than tol.
+func (s *Spectrum) mu(beta, r, start, tol float64) (float64, error) {
 	low, high := math.Log(muLeast), math.Log(math.Log1p(1/r)/beta)
-	if s.GroundIntegral(beta, -muLeast) <= r {
-		return -muLeast, nil
+	if start < -600 || s.edge.Theta < 0.01 {
+		if s.GroundIntegral(beta, -muLeast) <= r {
+			return -muLeast, nil
+		}
 	}
-	y := high - 1
+	y := math.Max(low, math.Min(start, high))
 	for range 200 {
-		mu := -math.Exp(y)
-		i := s.GroundIntegral(beta, mu)
+		i, slope := s.integralAndSlope(beta, -math.Exp(y))
 		if i > r {
 			low = y
 		} else {
 			high = y
 		}
 		// ln I is nearly straight in ln(-mu), so the step is taken there.
-		next := y - math.Log(i/r)*i/s.slope(beta, mu)
+		next := y - math.Log(i/r)*i/slope
 		if !(next > low && next < high) {
 			next = (low + high) / 2
 		}
-		if math.Abs(next-y) < 1e-14*math.Max(1, math.Abs(y)) || high-low < 1e-14 {
+		if math.Abs(next-y) < tol*math.Max(1, math.Abs(y)) || high-low < tol {
+			if next <= math.Log(muLeast)+1e-9 {
+				return -muLeast, nil
+			}
 			return -math.Exp(next), nil
 		}
 		y = next

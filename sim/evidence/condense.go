@@ -198,14 +198,16 @@ func (c *Condensed) keepMembers(s *Study, received []int32) {
 	})
 }
 
-// Start returns the network as the log left it, for growth under law l: run 0 takes the middle of what is known of every
-// member, other runs draw from it, keyed by seed. Members come in the order of Top, then of Classes.
+// Start returns the network as the log left it, for growth under law l: run 0 spreads the members of a class evenly over
+// what is known of them, other runs draw from it, keyed by seed. Members come in the order of Top, then of Classes.
 func (c *Condensed) Start(l law.Law, seed uint32, run int) *growth.Start {
 	s := &growth.Start{}
 	low, high := l.Support()
 	key := exact.Key(seed, exact.Posterior)
-	add := func(links int32, log, sd float64) {
-		if run > 0 {
+	add := func(links int32, log, sd, middle float64) {
+		if run == 0 {
+			log += float64(sd * exact.Normal(middle))
+		} else {
 			log += float64(sd * exact.Normal(exact.Unit(exact.Bits(key, uint64(len(s.Energy)), uint64(run)))))
 		}
 		e := c.top(run) - log
@@ -219,11 +221,11 @@ func (c *Condensed) Start(l law.Law, seed uint32, run int) *growth.Start {
 		s.Received = append(s.Received, links)
 	}
 	for _, m := range c.Top {
-		add(m.Links, m.Spread[0], m.Spread[1])
+		add(m.Links, m.Spread[0], m.Spread[1], 0.5)
 	}
 	for _, k := range c.Classes {
-		for range int(k[3]) {
-			add(int32(k[0]), k[1], k[2])
+		for i := range int(k[3]) {
+			add(int32(k[0]), k[1], k[2], (float64(i)+0.5)/k[3])
 		}
 	}
 	s.Rank = make([]float32, len(s.Energy))

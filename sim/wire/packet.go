@@ -142,7 +142,10 @@ func Decode(data []byte) (Packet, error) {
 			return p, err
 		}
 		p.Columns = append(p.Columns, c)
-		rest = rest[min(padded(size), len(rest)):]
+		if padded(size) > len(rest) {
+			return p, fmt.Errorf("wire: column %q is cut off", ch.Name)
+		}
+		rest = rest[padded(size):]
 	}
 	if len(rest) > 0 {
 		return p, fmt.Errorf("wire: %d bytes left over", len(rest))

@@ -21,8 +21,12 @@ const part = (id: string): string => document.getElementById(id)?.textContent ??
 
 /** Compiles a module from the page: base64 of gzip. */
 async function moduleFrom(id: string): Promise<WebAssembly.Module> {
+  // What stands behind this script in the page may not have been read yet.
+  if (!document.getElementById(id)) await new Promise((resolve) => document.addEventListener("DOMContentLoaded", resolve, { once: true }));
   const text = part(id).trim();
-  const packed = Uint8Array.from(atob(text), (c) => c.charCodeAt(0));
+  const letters = atob(text);
+  const packed = new Uint8Array(letters.length);
+  for (let i = 0; i < letters.length; i++) packed[i] = letters.charCodeAt(i);
   document.getElementById(id)?.remove();
   const plain = new Blob([packed]).stream().pipeThrough(new DecompressionStream("gzip"));
   return WebAssembly.compile(await new Response(plain).arrayBuffer());
@@ -40,8 +44,8 @@ function Header(): JSX.Element {
       <nav aria-label="Casebook">
         <button type="button" class="icon" disabled={!canUndo.value} onClick={undo} aria-label="Undo" title="Undo (Ctrl+Z)">↶</button>
         <button type="button" class="icon" disabled={!canRedo.value} onClick={redo} aria-label="Redo" title="Redo (Ctrl+Shift+Z)">↷</button>
-        <button type="button" onClick={openLogDialog}>Read a log</button>
-        <button type="button" onClick={() => (dialog.value = "share")}>Copy link</button>
+        <button type="button" class="desk" onClick={openLogDialog}>Read a log</button>
+        <button type="button" class="desk" onClick={() => (dialog.value = "share")}>Copy link</button>
         <button type="button" class="wide" onClick={() => (dialog.value = "open")}>Open</button>
         <button type="button" class="wide" onClick={() => void saveFile()}>Save</button>
         <button type="button" class="wide" onClick={() => (dialog.value = "shelf")}>Casebooks</button>
@@ -51,6 +55,8 @@ function Header(): JSX.Element {
         <details class="more">
           <summary aria-label="More">⋯</summary>
           <div onClick={(e) => ((e.currentTarget.parentElement as HTMLDetailsElement).open = false)}>
+            <button type="button" class="phone" onClick={openLogDialog}>Read a log</button>
+            <button type="button" class="phone" onClick={() => (dialog.value = "share")}>Copy link</button>
             <button type="button" onClick={() => (dialog.value = "open")}>Open</button>
             <button type="button" onClick={() => void saveFile()}>Save</button>
             <button type="button" onClick={() => (dialog.value = "shelf")}>Casebooks</button>
@@ -163,7 +169,8 @@ async function start(): Promise<void> {
   const exec = part("wasm-exec");
   startEngines({ script: `${exec}\n${part("worker")}`, module: moduleFrom("engine-wasm") });
   watchTheme();
-  const source = { script: exec, module: moduleFrom("stage-wasm") };
+  let stageModule: Promise<WebAssembly.Module> | undefined;
+  const source = { script: exec, module: () => (stageModule ??= moduleFrom("stage-wasm")) };
   const root = document.getElementById("page");
   if (!root) return;
   try {

@@ -4,7 +4,7 @@ import type { Curves, Grown, Outlook, Solved } from "../state/types";
 import { count, number, percent } from "../words/format";
 
 const css = (name: string): string => `var(--${name})`;
-const style = { background: "none", fontSize: "11.5px", color: "currentColor", overflow: "visible" };
+const style = { background: "none", fontFamily: "inherit", fontSize: "11.5px", color: "currentColor", overflow: "visible" };
 const ember = css("ember"), ink = css("ink"), quiet = css("ink-2"), line = css("hairline"), blue = css("r3");
 const finite = (x: number | null | undefined): x is number => typeof x === "number" && Number.isFinite(x);
 
@@ -15,6 +15,8 @@ function tone(pull: number): string {
 }
 
 interface Point { x: number; y: number }
+/** Powers of ten in a range. */
+const decades = (low: number, high: number): number[] => Array.from({ length: 9 }, (_, i) => 10 ** i).filter((d) => d >= low && d <= high);
 const points = (x: number[], y: (number | null)[]): Point[] => x.flatMap((v, i) => { const w = y[i]; return finite(w) ? [{ x: v, y: w }] : []; });
 
 /** p(eps), its area in the colours of the disc; the leader's place. */
@@ -27,18 +29,26 @@ export function density(c: Curves, leader: { id: string; energy: number } | unde
   }
   const top = Math.min(Math.max(...c.density.slice(1)), 4 * (c.density[Math.floor(c.density.length / 2)] ?? 1) + 4);
   const law = points(c.eps, c.density.map((d) => Math.min(d, top * 1.05)));
-  const bands = law.slice(1).map((p, i) => ({ x1: law[i]!.x, x2: p.x, y: (p.y + law[i]!.y) / 2, fill: tone(c.pull?.[i] ?? 0) }));
+  // Neighbours of one colour are one area; areas overlap by a point, so that no seam shows.
+  const bands: (Point & { fill: string; band: number })[] = [];
+  law.forEach((p, i) => {
+    const fill = tone(c.pull?.[i] ?? 0);
+    const before = bands.at(-1);
+    if (before && before.fill !== fill) bands.push({ ...p, fill: before.fill, band: before.band });
+    bands.push({ ...p, fill, band: before ? before.band + (before.fill === fill ? 0 : 1) : 0 });
+  });
+  const leaderTop = leader ? (law.find((p) => p.x >= leader.energy)?.y ?? 0) : 0;
   const low = law[0]?.x ?? 0, high = law.at(-1)?.x ?? 1;
   return Plot.plot({
     width, height: 170, style, marginLeft: 8, marginRight: 10, marginBottom: 38, marginTop: 22,
     x: { label: null, ticks: 5, line: true, domain: [Math.min(0, low), high] }, y: { axis: null, domain: [0, top * 1.08] },
     marks: [
-      Plot.rectY(bands, { x1: "x1", x2: "x2", y: "y", fill: "fill", fillOpacity: 0.85 }),
+      Plot.areaY(bands, { x: "x", y1: 0, y2: "y", z: "band", fill: "fill" }),
       held && Plot.line(points(held.eps, held.density), { x: "x", y: "y", stroke: quiet, strokeDasharray: "3 3" }),
       Plot.line(law, { x: "x", y: "y", stroke: ink, strokeWidth: 1.75, clip: true }),
-      leader && leader.energy <= high ? Plot.ruleX([leader], { x: "energy", y1: 0, y2: top * 0.14, stroke: ember, strokeWidth: 2.5 }) : null,
-      leader && leader.energy <= high ? Plot.text([leader], { x: "energy", y: top * 0.14, dy: -8, dx: 3, text: "id", fill: css("ember-text"), fontWeight: 600, textAnchor: "start" }) : null,
-      Plot.text([{ x: Math.min(0, low), t: "fittest", a: "start" }, { x: high, t: "least fit", a: "end" }].slice(0, 1), { x: "x", frameAnchor: "bottom-left", text: "t", dy: 36, dx: -8, textAnchor: "start", fill: quiet }),
+      leader && leader.energy <= high ? Plot.ruleX([leader], { x: "energy", y1: 0, y2: leaderTop + top * 0.06, stroke: ember, strokeWidth: 2.5 }) : null,
+      leader && leader.energy <= high ? Plot.text([leader], { x: "energy", y: leaderTop + top * 0.06, dy: -7, dx: -4, text: "id", fill: css("ember-text"), fontWeight: 600, textAnchor: "start" }) : null,
+      Plot.text(["fittest"], { frameAnchor: "bottom-left", dy: 36, textAnchor: "start", fill: quiet }),
       Plot.text(["energy ε"], { frameAnchor: "bottom", dy: 36, fill: quiet }),
       Plot.text(["least fit"], { frameAnchor: "bottom-right", dy: 36, textAnchor: "end", fill: quiet }),
     ],
@@ -128,15 +138,11 @@ export function shares(g: Grown, width: number): Element {
   const end = g.path.members.at(-1) ?? 1;
   const top = Math.min(1, Math.max(0.02, ...leader.filter((p) => p.x > 20).map((p) => p.y)) * 1.12);
   const colour = (i: number): string => (i === 0 ? ember : css(`r${Math.min(8, 1 + 2 * i)}`));
-  let lastY = Infinity;
-  const labels = rows.filter((r) => r.x === end).sort((a, b) => b.y - a.y).map((r) => {
-    const y = Math.min(r.y, lastY - top * 0.085);
-    lastY = y;
-    return { ...r, at: y };
-  }).filter((r) => r.at > -top * 0.06);
+  let below = -Infinity; // labels keep a line apart, from the lowest up
+  const labels = rows.filter((r) => r.x === end).sort((a, b) => a.y - b.y).map((r) => ({ ...r, at: (below = Math.max(r.y, below + top * 0.085)) }));
   return Plot.plot({
     width, height: 190, style, marginLeft: 40, marginRight: 58, marginBottom: 24, marginTop: 20,
-    x: { type: "log", label: null, domain: [Math.max(2, Math.min(10, g.path.members[0] ?? 2)), end], ticks: 4, tickFormat: (d: number) => (/^[1]0*$/.test(String(d)) ? count(d) : ""), line: true },
+    x: { type: "log", label: null, domain: [Math.max(2, Math.min(10, g.path.members[0] ?? 2)), end], ticks: decades(2, end), tickFormat: count, line: true },
     y: { label: null, domain: [0, top], ticks: 3, tickFormat: percent, clamp: true },
     marks: [
       Plot.gridY({ stroke: line, ticks: 3 }),
@@ -156,7 +162,7 @@ export function track(t: { members: number[]; share: number[]; top4: number[] },
   const end = leader.at(-1);
   const last = four.at(-1);
   return Plot.plot({
-    width, height: 170, style, marginLeft: 40, marginRight: 62, marginBottom: 24, marginTop: 10, x: { type: "log", label: null, ticks: 4, tickFormat: (d: number) => (/^[125]0*$/.test(String(d)) ? count(d) : ""), line: true },
+    width, height: 170, style, marginLeft: 40, marginRight: 62, marginBottom: 24, marginTop: 10, x: { type: "log", label: null, ticks: decades(t.members[0] ?? 2, t.members.at(-1) ?? 10), tickFormat: count, line: true },
     y: { label: null, domain: [0, top], ticks: 3, tickFormat: percent, clamp: true },
     marks: [
       Plot.gridY({ stroke: line, ticks: 3 }),

@@ -28,6 +28,19 @@ export function Slider(p: SliderProps): JSX.Element {
   const [text, setText] = useState<string | undefined>(undefined);
   const [fault, setFault] = useState<string | undefined>(undefined);
   const [a, b] = p.slide;
+  // Keys pressed one after another are one step of undo, like one drag.
+  const pressing = useRef(0);
+  const press = (): void => {
+    if (pressing.current) clearTimeout(pressing.current);
+    else p.onBegin?.();
+    pressing.current = window.setTimeout(released, 700);
+  };
+  const released = (): void => {
+    if (!pressing.current) return;
+    clearTimeout(pressing.current);
+    pressing.current = 0;
+    p.onEnd?.();
+  };
   const toNotch = (v: number): number => {
     const x = Math.min(b, Math.max(a, v));
     return Math.round(notches * (p.log ? Math.log(x / a) / Math.log(b / a) : (x - a) / (b - a)));
@@ -55,8 +68,9 @@ export function Slider(p: SliderProps): JSX.Element {
       <label for={`${id}n`} id={`${id}l`}>{p.label}</label>
       <input
         type="range" min={0} max={notches} value={toNotch(p.value)} aria-labelledby={`${id}l`} aria-valuetext={`${typed(p.value, p.step)} ${p.unit ?? ""}`}
-        onPointerDown={p.onBegin} onPointerUp={p.onEnd} onChange={p.onEnd}
+        onPointerDown={p.onBegin} onPointerUp={p.onEnd} onPointerCancel={p.onEnd} onBlur={released}
         onKeyDown={(e) => {
+          if (/^(Arrow|Page|Home|End)/.test(e.key)) press();
           const by = { ArrowRight: 1, ArrowUp: 1, ArrowLeft: -1, ArrowDown: -1, PageUp: 10, PageDown: -10 }[e.key];
           if (!by || p.log) return;
           e.preventDefault();
@@ -74,7 +88,7 @@ export function Slider(p: SliderProps): JSX.Element {
       />
       <input
         id={`${id}n`} class="value" type="text" inputMode="decimal" autocomplete="off" value={text ?? typed(p.value, p.step)} aria-invalid={fault ? "true" : undefined} aria-describedby={`${id}h`}
-        onInput={(e) => enter(e.currentTarget.value)} onBlur={() => { setText(undefined); setFault(undefined); }}
+        onFocus={p.onBegin} onInput={(e) => enter(e.currentTarget.value)} onBlur={() => { setText(undefined); setFault(undefined); p.onEnd?.(); }}
       />
       <span class="hint" id={`${id}h`}>{fault ? <span class="fault" role="alert">{fault}</span> : <>{p.unit ? `${p.unit}; ` : ""}{p.help}</>}</span>
     </div>

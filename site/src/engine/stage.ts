@@ -13,6 +13,7 @@ export interface StageSettings {
   playing: boolean;
   still: boolean;
   small: boolean;
+  label: number;
 }
 
 export interface Spot {
@@ -62,17 +63,6 @@ export interface StageEvents {
   lost: (sentence: string) => void;
 }
 
-/** Whether this page can get the drawing context the stage needs. */
-export function canDraw(): boolean {
-  try {
-    const gl = document.createElement("canvas").getContext("webgl2");
-    gl?.getExtension("WEBGL_lose_context")?.loseContext();
-    return gl !== null;
-  } catch {
-    return false;
-  }
-}
-
 export class Stage {
   private frame: HTMLIFrameElement | undefined;
   private window: StageWindow | undefined;
@@ -80,11 +70,12 @@ export class Stage {
   private settings: string | undefined;
   private network: Uint8Array<ArrayBuffer> | undefined;
   private rebuilds = 0;
+  private refused = false; // no drawing context is to be had
 
   constructor(
     private readonly host: HTMLElement,
     private readonly script: string,
-    private readonly module: Promise<WebAssembly.Module>,
+    private readonly module: () => Promise<WebAssembly.Module>,
     private readonly events: StageEvents,
   ) {
     this.build();
@@ -117,7 +108,7 @@ export class Stage {
       if (s.ready) this.ready(w);
       else this.events.said(s);
     };
-    const module = await this.module;
+    const module = await this.module();
     const instance = await w.WebAssembly.instantiate(module, go.importObject);
     await go.run(instance);
     if (this.frame === frame) this.lost();
@@ -127,8 +118,11 @@ export class Stage {
   private tame(w: StageWindow): void {
     const context = w.HTMLCanvasElement.prototype.getContext as (type: string, a?: object) => RenderingContext | null;
     w.HTMLCanvasElement.prototype.getContext = function (this: HTMLCanvasElement, type: string, a?: object) {
-      return context.call(this, type, { ...a, antialias: false });
+      const got = context.call(this, type, { ...a, antialias: false });
+      if (!got && type === "webgl2") refuse();
+      return got;
     } as typeof w.HTMLCanvasElement.prototype.getContext;
+    const refuse = (): void => { this.refused = true; };
     const next = w.requestAnimationFrame.bind(w);
     let parked: FrameRequestCallback | undefined;
     let busy = false;
@@ -162,7 +156,8 @@ export class Stage {
   }
 
   private lost(): void {
-    if (this.rebuilds++ < 5) this.rebuild();
+    if (this.refused) this.events.lost("This browser draws no WebGL, so the picture stands still; all figures and controls work.");
+    else if (this.rebuilds++ < 5) this.rebuild();
     else this.events.lost("The picture stopped working. Everything else goes on.");
   }
 

@@ -76,7 +76,7 @@ export function decode(bytes: Uint8Array<ArrayBuffer>): Packet {
   const columns = head.columns.map((h): Column => {
     const width = { u8: 1, i32: 4, f32: 4 }[h.type];
     if (!width) throw new Error(`wire: column "${h.name}" has the unknown type "${h.type}"`);
-    if (at + h.length * width > end) throw new Error(`wire: column "${h.name}" is cut off`);
+    if (at + padded(h.length * width) > end) throw new Error(`wire: column "${h.name}" is cut off`);
     const make = { u8: Uint8Array, i32: Int32Array, f32: Float32Array }[h.type];
     const data = new make(bytes.buffer, at, h.length);
     at += padded(h.length * width);

@@ -5,6 +5,7 @@ import { fan, shares, track } from "../charts/charts";
 import { useLayoutEffect, useRef } from "preact/hooks";
 import { current, doc, tables } from "../state/document";
 import { grown, solved } from "../state/results";
+import { addressWith } from "../state/storage";
 import type { Entry } from "../state/types";
 import { count, number, percent, range } from "../words/format";
 import { evidenceWords, Origin } from "./evidence";
@@ -102,7 +103,7 @@ export function PrintedBrief(): JSX.Element | null {
         <ul>{assumptions(e).map((a) => <li key={a}>{a}</li>)}</ul>
       </div>
       <p class="caution"><strong>Caution.</strong> {tables.value?.caution}</p>
-      {briefCode.value && <p class="code">Opens again by this code, pasted under “Open”: <code>{briefCode.value}</code></p>}
+      {briefCode.value && <p class="code">Opens again by this link, or by what follows its #c= pasted under “Open”: <code>{addressWith(briefCode.value)}</code></p>}
     </section>
   );
 }

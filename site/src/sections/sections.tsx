@@ -65,7 +65,7 @@ export function LawSection(p: { entry: Entry }): JSX.Element | null {
         onChange={(v) => editEntry((e) => ({ ...e, sharpness: v }))}
       />
       <Slider
-        label="Links per newcomer m" value={p.entry.growth.links} low={1} high={t.limits.links} slide={[1, 12]} step={1} help="agreements each newcomer makes" onBegin={begin} onEnd={end}
+        label="Links a newcomer m" value={p.entry.growth.links} low={1} high={t.limits.links} slide={[1, 12]} step={1} help="agreements each newcomer makes" onBegin={begin} onEnd={end}
         onChange={(v) => setGrowth({ links: v })}
       />
       <Slider
@@ -130,12 +130,13 @@ export function SharesSection(): JSX.Element {
       {busy && <Progress what="Growing the network" done={busy.done} onCancel={cancelGrowth} />}
       {g && (
         <>
-          <Figure
+          {g.from > 1 && <p class="caption">This entry begins with the network the log left, at {count(g.from)} members; how its shares went before stands under Evidence.</p>}
+          {g.path.members.length > 3 && <Figure
             title="Share of all links" name="shares" class="plain" summary={`${g.leader.id} leads with ${percent(g.leader.share)} at ${count(g.members)} members; ${g.leadChanges} lead changes that lasted.`}
             draw={(w) => shares(g, w)}
             table={() => ({ columns: ["members", "leader's share", "top four", "HHI", ...g.ranking.slice(0, g.path.followed.length).map((r) => r.id)], rows: g.path.members.map((n, i) => [n, g.path.share[i] ?? 0, g.path.top4[i] ?? 0, g.path.hhi[i] ?? 0, ...g.path.followed.map((f) => f[i] ?? 0)]) })}
             note="Dashed: whoever leads. Marks at the top: the lead changed for good (for 5 % of growth at least)."
-          />
+          />}
           <dl class="pairs">
             <div><dt>Top four together (CR4)</dt><dd>{percent(g.top4)}</dd></div>
             <div><dt>HHI</dt><dd>{number(g.hhi)} <small>points of 10,000</small></dd></div>

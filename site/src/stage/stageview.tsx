@@ -1,8 +1,8 @@
 // The right side: the standing in one line, the disc with its labels, the transport.
 import type { JSX } from "preact";
-import { effect } from "@preact/signals";
+import { effect, signal } from "@preact/signals";
 import { useEffect, useRef } from "preact/hooks";
-import { canDraw, Stage, type StageSettings } from "../engine/stage";
+import { Stage, type StageSettings } from "../engine/stage";
 import { column } from "../engine/wire";
 import { current } from "../state/document";
 import { network } from "../state/edges";
@@ -13,20 +13,22 @@ import { count, number, percent } from "../words/format";
 
 export interface StageSource {
   script: string;
-  module: Promise<WebAssembly.Module>;
+  module: () => Promise<WebAssembly.Module>;
 }
 
 let stage: Stage | undefined;
+/** The stage shows its own picture. */
+const drawn = signal(false);
 
 const settings = (): StageSettings => ({
   members: Math.round(shown.value), arrival: arrival.value, theme: theme.value, zoom: zoom.value.zoom, panX: zoom.value.x, panY: zoom.value.y,
-  ceiling: current.value?.entry.growth.ceiling ?? 0, follow: follow.value, hover: hover.value, quick: quick.value, playing: playing.value, still: still.value, small: innerWidth < 600,
+  ceiling: current.value?.entry.growth.ceiling ?? 0, follow: follow.value, hover: hover.value, quick: quick.value, playing: playing.value, still: still.value, small: innerWidth < 600, label: projector.value ? 1.65 : 1,
 });
 
 export const nameOf = (member: number): string => grown.value?.value.ranking.find((r) => r.member === member)?.id ?? `M${member}`;
 
 /** The network without a stage: a picture painted by the engine, put on a canvas. */
-function stillPicture(canvas: HTMLCanvasElement): () => void {
+function stillPicture(canvas: HTMLCanvasElement, painted: () => void): () => void {
   return effect(() => {
     const s = settings();
     if (!network.value) return;
@@ -39,27 +41,40 @@ function stillPicture(canvas: HTMLCanvasElement): () => void {
       canvas.width = width;
       canvas.height = height;
       canvas.getContext("2d")?.putImageData(new ImageData(new Uint8ClampedArray(rgba), width, height), 0, 0);
+      painted();
     }, () => {});
   });
 }
 
+/** The first picture comes from the engine, so that something is seen while the stage starts; where the stage cannot run,
+ * every picture does. */
 function useStage(source: StageSource): { host: { current: HTMLDivElement | null }; canvas: { current: HTMLCanvasElement | null } } {
   const host = useRef<HTMLDivElement>(null), canvas = useRef<HTMLCanvasElement>(null);
   useEffect(() => {
-    if (!canDraw()) {
-      stageFault.value = "This browser draws no WebGL, so the picture stands still; all figures and controls work.";
-      return canvas.current ? stillPicture(canvas.current) : undefined;
-    }
-    stage = new Stage(host.current!, source.script, source.module, {
-      said: (s) => (said.value = s),
-      ready: () => (stageFault.value = undefined),
-      lost: (sentence) => (stageFault.value = sentence),
-    });
-    const stops = [
-      effect(() => { if (network.value) stage?.load(network.value); }),
-      effect(() => stage?.set(settings())),
-    ];
-    return () => stops.forEach((f) => f());
+    const stops: (() => void)[] = [];
+    let stop = (): void => {};
+    const begin = (): void => {
+      if (stage) return;
+      stage = new Stage(host.current!, source.script, source.module, {
+        said: (s) => {
+          if (!said.peek()) {
+            stop();
+            drawn.value = true;
+          }
+          said.value = s;
+        },
+        ready: () => (stageFault.value = undefined),
+        lost: (sentence) => {
+          stageFault.value = sentence;
+          drawn.value = false;
+          stop();
+          stop = stillPicture(canvas.current!, () => {});
+        },
+      });
+      stops.push(effect(() => { if (network.value) stage?.load(network.value); }), effect(() => stage?.set(settings())));
+    };
+    stop = stillPicture(canvas.current!, () => setTimeout(begin, 60));
+    return () => { stop(); stops.forEach((f) => f()); };
   }, []);
   return { host, canvas };
 }
@@ -194,7 +209,7 @@ function Legend(): JSX.Element | null {
     <>
       <div class="legend sizes" aria-hidden="true">
         <div>{[0.25, 0.05, 0.01].map((x) => <span key={x}><small>{percent(x)}</small><i style={{ width: `${2 * size(x)}px`, height: `${2 * size(x)}px` }} /></span>)}</div>
-        <p>one stroke for {s.oneStrokeFor < 1.5 ? "each link" : `${count(s.oneStrokeFor)} links`}</p>
+        <p>{(grown.value?.value.from ?? 1) >= s.members ? "links of the log are counted, not drawn" : `one stroke for ${s.oneStrokeFor < 1.5 ? "each link" : `${count(s.oneStrokeFor)} links`}`}</p>
       </div>
       <div class="legend pull" aria-hidden="true">
         <p>pull on newcomers</p>
@@ -258,6 +273,9 @@ function play(): void {
 
 const notches = 1000;
 
+const Icon = (p: { d: string }): JSX.Element => <svg viewBox="0 0 16 16" width="16" height="16" aria-hidden="true"><path d={p.d} fill="currentColor" /></svg>;
+const shapes = { start: "M2 3h2v10H2zM13 3v10L5 8z", end: "M12 3h2v10h-2zM3 3v10l8-5z", play: "M4 2.5v11L13 8z", pause: "M3 3h3.5v10H3zM9.5 3H13v10H9.5z" };
+
 function Transport(): JSX.Element | null {
   const g = grown.value?.value;
   const low = Math.max(2, g ? (g.from > 1 ? g.from : Math.min(10, g.members)) : 10);
@@ -272,16 +290,16 @@ function Transport(): JSX.Element | null {
   return (
     <div class="transport">
       <div class="buttons">
-        <button type="button" class="icon" aria-label="To the beginning" onClick={() => { playing.value = false; shown.value = low; }}>⏮</button>
-        <button type="button" class="primary" onClick={play} aria-pressed={playing.value}>{playing.value ? "❚❚ Pause" : "▶ Play"}</button>
-        <button type="button" class="icon" aria-label="To the end" onClick={() => { playing.value = false; shown.value = high; }}>⏭</button>
+        <button type="button" class="icon" aria-label="To the beginning" onClick={() => { playing.value = false; shown.value = low; }}><Icon d={shapes.start} /></button>
+        <button type="button" class="primary" onClick={play} aria-pressed={playing.value}><Icon d={playing.value ? shapes.pause : shapes.play} /> {playing.value ? "Pause" : "Play"}</button>
+        <button type="button" class="icon" aria-label="To the end" onClick={() => { playing.value = false; shown.value = high; }}><Icon d={shapes.end} /></button>
       </div>
       <div class="scrubber">
         <div class="reigns" aria-hidden="true">
           {reigns.map((r, i) => (
             <span key={r.from} class={r.last ? "now" : undefined} data-odd={i % 2 === 1 ? "" : undefined} style={{ left: `${r.a / 10}%`, width: `${(r.b - r.a) / 10}%` }}>{r.b - r.a > 70 && <em>{nameOf(r.leader)}</em>}</span>
           ))}
-          {lever > low && lever < high && <b class="flag" style={{ left: `${to(lever) / 10}%` }} title={`Levers from ${count(lever)} members`}>⚑</b>}
+          {lever > low && lever < high && <b class="flag" style={{ left: `${to(lever) / 10}%` }} title={`Levers from ${count(lever)} members`} />}
         </div>
         <input type="range" min={0} max={notches} value={to(at)} aria-label="Members on show" aria-valuetext={`${count(at)} members`}
           onInput={(e) => { playing.value = false; shown.value = from(Number(e.currentTarget.value)); }}
@@ -320,8 +338,7 @@ export function StageView(p: { source: StageSource }): JSX.Element {
       <Readout />
       <div class="picture">
         <div class="host" ref={host} />
-        {stageFault.value && <canvas class="host" ref={canvas} aria-hidden="true" />}
-        {!stageFault.value && <canvas class="host" hidden ref={canvas} aria-hidden="true" />}
+        <canvas class="host" hidden={drawn.value} ref={canvas} aria-hidden="true" />
         <Labels />
         <Overlay />
         <MemberCard />
