@@ -73,10 +73,10 @@ function PhoneBar(): JSX.Element | null {
   const s = said.value;
   if (!s?.leader) return null;
   return (
-    <div class="phonebar">
+    <aside class="phonebar" aria-label="In short">
       <span><strong>{nameOf(s.leader.member)} {percent(s.leader.share)}</strong><small>{solved.value?.value.verdict.heading} at {count(s.members)}</small></span>
       <button type="button" onClick={() => document.getElementById("stage")?.scrollIntoView({ behavior: "smooth" })}>Picture</button>
-    </div>
+    </aside>
   );
 }
 

@@ -143,7 +143,8 @@ function travel(from: typeof past, to: typeof future): void {
   batch(() => {
     from.value = from.peek().slice(0, -1);
     to.value = [...to.peek(), d];
-    const open = next.keys.includes(d.open) ? d.open : next.open;
+    // Where entries came or went, what was unfolded then is unfolded again; else what is unfolded stays.
+    const open = next.keys.join() === d.keys.join() ? d.open : next.open;
     doc.value = { ...next, open };
     toast.value = undefined;
   });
