@@ -9,7 +9,7 @@ const read = (p) => readFileSync(here(p), "utf8");
 
 async function bundle(entry) {
   const r = await build({
-    entryPoints: [here(entry).pathname], bundle: true, minify: true, write: false, format: "iife", target: "es2022", charset: "utf8", legalComments: "none",
+    entryPoints: [here(entry).pathname], bundle: true, minify: !process.env.PLAIN, write: false, format: "iife", target: "es2022", charset: "utf8", legalComments: "none",
     jsx: "automatic", jsxImportSource: "preact", define: { "process.env.NODE_ENV": '"production"' },
   });
   return r.outputFiles[0].text.trim();

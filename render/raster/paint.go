@@ -1,6 +1,7 @@
 package raster
 
 import (
+	"encoding/binary"
 	"math"
 
 	"preponder/render/scene"
@@ -10,15 +11,17 @@ import (
 type Canvas struct {
 	Width, Height int
 	Pix           []byte
+	at            placed
+	distance      []uint16
 }
 
 // NewCanvas returns a canvas, reusing the bytes of old where they suffice.
 func NewCanvas(width, height int, old *Canvas) *Canvas {
 	n := 4 * width * height
 	if old != nil && cap(old.Pix) >= n {
-		return &Canvas{width, height, old.Pix[:n]}
+		return &Canvas{width, height, old.Pix[:n], old.at, old.distance}
 	}
-	return &Canvas{width, height, make([]byte, n)}
+	return &Canvas{Width: width, Height: height, Pix: make([]byte, n)}
 }
 
 // Paint paints a whole picture.
@@ -69,56 +72,66 @@ func (c *Canvas) discs(p scene.Picture, t Theme) {
 	}
 }
 
-// ground fills background, plate and wash.
+// steps of the wash from the middle to the rim.
+const steps = 512
+
+// ground fills background, plate and wash: every pixel by its distance from the middle, which is kept from picture to
+// picture of the same size.
 func (c *Canvas) ground(p scene.Picture, t Theme) {
-	back := [4]byte{byte(t.Back[0]), byte(t.Back[1]), byte(t.Back[2]), 255}
-	wash := t.At(t.washTone)
-	const steps = 512
-	var table [steps + 2][4]byte
-	for i := range table {
-		x := float64(i) / steps * float64(len(p.Wash))
-		k := min(int(x-0.5+1e-9), len(p.Wash)-1)
-		a := 0.0
-		if len(p.Wash) > 0 {
-			k = max(0, k)
-			next := min(k+1, len(p.Wash)-1)
-			f := math.Max(0, math.Min(1, x-0.5-float64(k)))
-			a = t.washAlpha * (p.Wash[k]*(1-f) + p.Wash[next]*f)
-		}
-		for j := range 3 {
-			table[i][j] = byte(t.Plate[j] + a*(wash[j]-t.Plate[j]))
-		}
-		table[i][3] = 255
+	if at := (placed{c.Width, c.Height, p.CX, p.CY, p.R}); at != c.at {
+		c.at = at
+		c.measure()
 	}
-	r2 := p.R * p.R
+	var table [steps + 2]uint32
+	pack := func(col Colour) uint32 {
+		return uint32(col[0]) | uint32(col[1])<<8 | uint32(col[2])<<16 | 255<<24
+	}
+	wash := t.At(t.washTone)
+	for i := range steps + 1 {
+		a := 0.0
+		if last := len(p.Wash) - 1; last >= 0 {
+			x := float64(i)/steps*float64(len(p.Wash)) - 0.5
+			k := max(0, min(int(x), last))
+			f := max(0, min(1, x-float64(k)))
+			a = t.washAlpha * (p.Wash[k]*(1-f) + p.Wash[min(k+1, last)]*f)
+		}
+		col := t.Plate
+		for j := range col {
+			col[j] += a * (wash[j] - col[j])
+		}
+		table[i] = pack(col)
+	}
+	table[steps+1] = pack(t.Back)
+	for i, d := range c.distance {
+		binary.LittleEndian.PutUint32(c.Pix[4*i:], table[d])
+	}
+}
+
+// placed says for which picture distances were measured.
+type placed struct {
+	width, height int
+	cx, cy, r     float64
+}
+
+// measure fills in the step of the wash each pixel lies on; beyond the rim the one after the last.
+func (c *Canvas) measure() {
+	c.distance = make([]uint16, c.Width*c.Height)
 	for y := range c.Height {
-		row := c.Pix[4*y*c.Width : 4*(y+1)*c.Width]
-		dy := float64(y) + 0.5 - p.CY
-		half := 0.0
-		if dy*dy < r2 {
-			half = math.Sqrt(r2 - dy*dy)
-		}
-		from := max(0, min(c.Width, int(math.Ceil(p.CX-half-0.5))))
-		to := max(from, min(c.Width, int(math.Floor(p.CX+half-0.5))+1))
-		if half == 0 {
-			to = from
-		}
-		for x := range from {
-			copy(row[4*x:], back[:])
-		}
-		for x := from; x < to; x++ {
-			dx := float64(x) + 0.5 - p.CX
-			copy(row[4*x:], table[int(math.Sqrt((dx*dx+dy*dy)/r2)*steps)][:])
-		}
-		for x := to; x < c.Width; x++ {
-			copy(row[4*x:], back[:])
+		dy := float64(y) + 0.5 - c.at.cy
+		row := c.distance[y*c.Width : (y+1)*c.Width]
+		for x := range row {
+			dx := float64(x) + 0.5 - c.at.cx
+			row[x] = steps + 1
+			if d := math.Sqrt(dx*dx+dy*dy) / c.at.r; d <= 1 {
+				row[x] = uint16(d * steps)
+			}
 		}
 	}
 }
 
 // grain paints the crowd, one pixel a member, thinned where it would close.
 func (c *Canvas) grain(p scene.Picture, t Theme) {
-	density := float64(len(p.Grain)) / math.Max(1, math.Pi*p.R*p.R)
+	density := float64(len(p.Grain)) / max(1, math.Pi*p.R*p.R)
 	g := 1.1
 	if density > 0.35 {
 		g = 1.1 * math.Pow(0.35/density, 0.8)
@@ -147,14 +160,17 @@ func (c *Canvas) stroke(s scene.Stroke, t Theme, gain float64) {
 	case s.Ink:
 		col = t.Ink
 	}
-	c.Line(s.X0, s.Y0, s.X1, s.Y1, s.W0, s.W1, col, math.Min(1, s.Alpha*gain))
+	c.Line(s.X0, s.Y0, s.X1, s.Y1, s.W0, s.W1, col, min(1, s.Alpha*gain))
 }
 
 // Line paints a line whose width goes from w0 to w1, by coverage across its longer axis.
 func (c *Canvas) Line(x0, y0, x1, y1, w0, w1 float64, col Colour, alpha float64) {
-	steep := math.Abs(y1-y0) > math.Abs(x1-x0)
-	if steep {
+	across, along := 4*c.Width, 4 // bytes from pixel to pixel across and along the line
+	far, end := c.Height, c.Width
+	if steep := math.Abs(y1-y0) > math.Abs(x1-x0); steep {
 		x0, y0, x1, y1 = y0, x0, y1, x1
+		across, along = along, across
+		far, end = end, far
 	}
 	if x0 > x1 {
 		x0, y0, x1, y1, w0, w1 = x1, y1, x0, y0, w1, w0
@@ -164,39 +180,44 @@ func (c *Canvas) Line(x0, y0, x1, y1, w0, w1 float64, col Colour, alpha float64)
 		return
 	}
 	slope := (y1 - y0) / dx
-	lean := math.Sqrt(1 + slope*slope) // width along the shorter axis
-	end := c.Width
-	if steep {
-		end = c.Height
-	}
+	lean := math.Sqrt(1+slope*slope) / 2 // half the width along the shorter axis
+	taper := (w1 - w0) / dx
+	r, g, b := int32(col[0]), int32(col[1]), int32(col[2])
+	alpha *= 256
 	for i := max(0, int(x0)); i <= min(end-1, int(x1)); i++ {
-		cover := math.Min(float64(i+1), x1) - math.Max(float64(i), x0)
+		from, to := max(float64(i), x0), min(float64(i+1), x1)
+		cover := (to - from) * alpha
 		if cover <= 0 {
 			continue
 		}
-		at := math.Max(x0, math.Min(x1, float64(i)+0.5))
-		f := (at - x0) / dx
-		y := y0 + slope*(at-x0)
-		half := (w0 + f*(w1-w0)) * lean / 2
-		low, high := y-half, y+half
-		for k := int(math.Floor(low)); k <= int(math.Floor(high)); k++ {
-			a := math.Min(float64(k+1), high) - math.Max(float64(k), low)
-			if steep {
-				c.blend(k, i, col, alpha*a*cover)
-			} else {
-				c.blend(i, k, col, alpha*a*cover)
-			}
+		at := (from+to)/2 - x0
+		y := y0 + slope*at
+		half := (w0 + taper*at) * lean
+		low, high := max(0, y-half), min(float64(far), y+half)
+		for k := int(low); float64(k) < high; k++ {
+			a := int32((min(float64(k+1), high) - max(float64(k), low)) * cover)
+			o := k*across + i*along
+			q := c.Pix[o : o+3 : o+3]
+			q[0] += byte((r - int32(q[0])) * a >> 8)
+			q[1] += byte((g - int32(q[1])) * a >> 8)
+			q[2] += byte((b - int32(q[2])) * a >> 8)
 		}
 	}
 }
 
 // Disc paints a filled disc.
 func (c *Canvas) Disc(x, y, r float64, col Colour, alpha float64) {
-	for j := int(y - r - 1); j <= int(y+r+1); j++ {
-		for i := int(x - r - 1); i <= int(x+r+1); i++ {
-			d := math.Hypot(float64(i)+0.5-x, float64(j)+0.5-y)
-			if a := r + 0.5 - d; a > 0 {
-				c.blend(i, j, col, alpha*math.Min(1, math.Min(a, 2*r)))
+	full := min(1, 2*r) * alpha
+	for j := max(0, int(y-r-1)); j <= min(c.Height-1, int(y+r+1)); j++ {
+		dy := float64(j) + 0.5 - y
+		inner, outer := (r-0.5)*(r-0.5)-dy*dy, (r+0.5)*(r+0.5)
+		for i := max(0, int(x-r-1)); i <= min(c.Width-1, int(x+r+1)); i++ {
+			dx := float64(i) + 0.5 - x
+			switch d2 := dx*dx + dy*dy; {
+			case dx*dx <= inner && r > 0.5:
+				c.blend(i, j, col, full)
+			case d2 < outer:
+				c.blend(i, j, col, alpha*min(1, min(r+0.5-math.Sqrt(d2), 2*r)))
 			}
 		}
 	}
@@ -217,10 +238,10 @@ func (c *Canvas) arcs(x, y, r, w float64, col Colour, alpha, dash, gap float64) 
 		return
 	}
 	around := 2 * math.Pi * r
-	step := math.Min(4*math.Max(1, w), around/24)
+	step := min(4*max(1, w), around/24)
 	period := step
 	if dash > 0 {
-		n := math.Max(6, math.Round(around/(dash+gap)))
+		n := max(6, math.Round(around/(dash+gap)))
 		period, step = around/n, dash
 	}
 	for s := 0.0; s < around-1e-6; s += period {

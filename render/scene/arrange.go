@@ -16,10 +16,14 @@ const (
 )
 
 // Arrange returns the picture of a view.
-func Arrange(c Columns, v View) Picture {
+func Arrange(c Columns, v View) Picture { return Again(Picture{}, c, v) }
+
+// Again is Arrange into the memory of a picture that is not needed any more.
+func Again(old Picture, c Columns, v View) Picture {
 	l := newLayout(c, v)
 	l.takeSeats()
-	p := Picture{CX: l.cx, CY: l.cy, R: l.r, Scale: v.Scale, Leader: -1, Links: l.links, OneStrokeFor: 1}
+	p := Picture{CX: l.cx, CY: l.cy, R: l.r, Scale: v.Scale, Leader: -1, Links: l.links, OneStrokeFor: 1,
+		Wash: old.Wash[:0], Grain: old.Grain[:0], Rings: old.Rings[:0], Under: old.Under[:0], Strokes: old.Strokes[:0], Spokes: old.Spokes[:0], Discs: old.Discs[:0]}
 	for _, q := range RingShares {
 		p.Rings = append(p.Rings, l.r*Radius(q))
 	}
@@ -67,7 +71,7 @@ func (l *layout) takeSeats() {
 			if step%2 == 1 {
 				turn = -turn
 			}
-			l.seat[j] = side * turn
+			l.turn(j, side*turn)
 		}
 	}
 }
@@ -77,11 +81,10 @@ func (l *layout) wash(p *Picture) {
 	var links, members [washRings]float64
 	m := 1.0
 	if l.n > 1 {
-		m = math.Max(1, float64(l.links)/float64(l.n-1))
+		m = max(1, float64(l.links)/float64(l.n-1))
 	}
 	for j, d := range l.received {
-		r, _ := l.polar(int32(j))
-		k := min(int(r*washRings), washRings-1)
+		k := min(int(math.Hypot(float64(l.at[j].x), float64(l.at[j].y))*washRings), washRings-1)
 		links[k] += float64(d)
 		members[k]++
 	}
@@ -103,7 +106,7 @@ func (l *layout) wash(p *Picture) {
 	}
 	for _, v := range value {
 		x := (math.Log10(v) - 0.12) / 1.5
-		p.Wash = append(p.Wash, math.Pow(math.Max(0, math.Min(1, x)), 0.8))
+		p.Wash = append(p.Wash, math.Pow(max(0, min(1, x)), 0.8))
 	}
 }
 
@@ -125,7 +128,7 @@ func (l *layout) members(p *Picture) {
 			atLeast = sorted[len(sorted)-limit] + 1
 		}
 	}
-	m := math.Max(1, float64(l.links)/math.Max(1, float64(l.n-1)))
+	m := max(1, float64(l.links)/max(1, float64(l.n-1)))
 	for j := range l.received {
 		k := int32(j)
 		tone := Tone(float64(l.c.Pull[j]))
@@ -135,7 +138,7 @@ func (l *layout) members(p *Picture) {
 				Capped: l.v.Ceiling > 0 && l.received[j] > 0 && l.share(k) >= l.v.Ceiling-0.015})
 			continue
 		}
-		p.Grain = append(p.Grain, Grain{x, y, 0.6 + 0.4*math.Min(3, float64(l.received[j])/m), tone})
+		p.Grain = append(p.Grain, Grain{x, y, 0.6 + 0.4*min(3, float64(l.received[j])/m), tone})
 	}
 	slices.SortStableFunc(p.Discs, func(a, b Disc) int {
 		if a.Leader != b.Leader {
@@ -163,7 +166,7 @@ func (l *layout) label(p *Picture) Label {
 		return Label{}
 	}
 	d := p.Discs[p.Leader]
-	size := math.Max(1, l.v.Label) * l.v.Scale
+	size := max(1, l.v.Label) * l.v.Scale
 	w, h := labelWidth*size, labelHeight*size
 	out := d.R + 14*l.v.Scale
 	var best Label
@@ -177,8 +180,8 @@ func (l *layout) label(p *Picture) Label {
 			if e.R < 5*l.v.Scale {
 				continue
 			}
-			dx := math.Max(0, math.Min(x+w/2, e.X+e.R)-math.Max(x-w/2, e.X-e.R))
-			dy := math.Max(0, math.Min(y+h/2, e.Y+e.R)-math.Max(y-h/2, e.Y-e.R))
+			dx := max(0, min(x+w/2, e.X+e.R)-max(x-w/2, e.X-e.R))
+			dy := max(0, min(y+h/2, e.Y+e.R)-max(y-h/2, e.Y-e.R))
 			over += dx * dy
 		}
 		if over < least {
@@ -201,7 +204,7 @@ func Pick(p Picture, x, y float64) int {
 	best, least := -1, 14*p.Scale
 	for i := len(p.Discs) - 1; i >= 0; i-- {
 		d := p.Discs[i]
-		gap := math.Max(0, math.Hypot(d.X-x, d.Y-y)-d.R)
+		gap := max(0, math.Hypot(d.X-x, d.Y-y)-d.R)
 		if gap < least {
 			best, least = int(d.Member), gap
 		}

@@ -94,7 +94,7 @@ var golden = math.Pi * (3 - math.Sqrt(5))
 
 // Tone returns the place on the colour ramp of a pull, given as log10 over the mean.
 func Tone(pull float64) float64 {
-	return math.Max(0, math.Min(1, 0.56-math.Copysign(0.37*math.Pow(math.Abs(pull), 0.6), pull)))
+	return max(0, min(1, 0.56-math.Copysign(0.37*math.Pow(math.Abs(pull), 0.6), pull)))
 }
 
 // A layout places members for one view.
@@ -104,47 +104,63 @@ type layout struct {
 	n        int
 	links    int
 	received []int32
+	at       []spot // of every member, in radii of the disc from its middle
 	cx, cy   float64
 	r        float64 // radius of the disc with zoom
 	dot      float64 // radius a share of 1 would have
-	seat     map[int32]float64
 	top      int32
 }
 
+type spot struct{ x, y float32 }
+
 func newLayout(c Columns, v View) *layout {
 	n := max(0, min(v.Members, c.Members()))
-	l := &layout{c: c, v: v, n: n, seat: map[int32]float64{}, top: -1}
+	l := &layout{c: c, v: v, n: n, top: -1, received: make([]int32, n), at: make([]spot, n)}
 	if n > 0 {
 		l.links = int(c.Before[n])
 	}
-	l.received = make([]int32, n)
 	for _, j := range c.Targets[:l.links] {
 		l.received[j]++
 	}
+	turns := directions(n)
 	for j, d := range l.received {
 		if d > 0 && (l.top < 0 || d > l.received[l.top]) {
 			l.top = int32(j)
 		}
+		r := float32(l.out(int32(j)))
+		l.at[j] = spot{r * turns[j].x, r * turns[j].y}
 	}
 	r := Fit(v)
-	z := math.Max(1, v.Zoom)
+	z := max(1, v.Zoom)
 	l.r = r * z
 	l.cx = v.Width/2 + v.PanX*l.r
 	l.cy = v.Height/2 + v.PanY*l.r
 	if !v.Bare {
-		l.cx -= 0
 		l.cy -= 18 * v.Scale
 	}
 	l.dot = r * math.Sqrt(0.03) * math.Sqrt(z)
 	return l
 }
 
+// known directions of the members, the same in every view.
+var known []spot
+
+func directions(n int) []spot {
+	for j := len(known); j < n; j++ {
+		s, c := math.Sincos(angle(j))
+		known = append(known, spot{float32(c), float32(s)})
+	}
+	return known
+}
+
+func angle(j int) float64 { return math.Mod(float64(j)*golden, 2*math.Pi) - math.Pi/2 }
+
 // Fit returns the radius of the disc that fits the view.
 func Fit(v View) float64 {
 	if v.Bare {
-		return math.Max(4, math.Min(v.Width, v.Height)/2-1)
+		return max(4, min(v.Width, v.Height)/2-1)
 	}
-	return math.Max(20, math.Min(v.Height/v.Scale-62, v.Width/v.Scale-24)/2-10) * v.Scale
+	return max(20, min(v.Height/v.Scale-62, v.Width/v.Scale-24)/2-10) * v.Scale
 }
 
 func (l *layout) share(j int32) float64 {
@@ -154,26 +170,29 @@ func (l *layout) share(j int32) float64 {
 	return float64(l.received[j]) / float64(l.links)
 }
 
-// polar returns radius (of the disc) and angle of a member.
-func (l *layout) polar(j int32) (r, angle float64) {
+// out returns how far out a member lies, in radii of the disc.
+func (l *layout) out(j int32) float64 {
 	a := l.v.Arrival
+	r := 0.0
 	if a < 1 {
 		r = (1 - a) * Radius(float64(l.c.Rank[j]))
 	}
 	if a > 0 {
 		r += a * Radius((float64(j)+0.5)/float64(l.n))
 	}
-	angle = math.Mod(float64(j)*golden, 2*math.Pi) - math.Pi/2
-	if turn, ok := l.seat[j]; ok {
-		angle += turn
-	}
-	return r, angle
+	return r
+}
+
+// turn moves a member along its ring.
+func (l *layout) turn(j int32, by float64) {
+	r := l.out(j)
+	s, c := math.Sincos(angle(int(j)) + by)
+	l.at[j] = spot{float32(r * c), float32(r * s)}
 }
 
 func (l *layout) place(j int32) (x, y float64) {
-	r, a := l.polar(j)
-	s, c := math.Sincos(a)
-	return l.cx + l.r*r*c, l.cy + l.r*r*s
+	p := l.at[j]
+	return l.cx + l.r*float64(p.x), l.cy + l.r*float64(p.y)
 }
 
 // radius returns the radius of a member's dot in pixels.
@@ -191,7 +210,7 @@ func (l *layout) radius(j int32) float64 {
 	if l.v.Bare {
 		floor = 0.8
 	}
-	return math.Max(floor*l.v.Scale, l.dot*math.Sqrt(l.share(j)))
+	return max(floor*l.v.Scale, l.dot*math.Sqrt(l.share(j)))
 }
 
 // hash is a small mixer for choices that must not beat against the golden angle.

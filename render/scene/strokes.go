@@ -18,9 +18,9 @@ func (l *layout) strokes(p *Picture) {
 		return
 	}
 	keep := float64(l.v.Strokes) / float64(l.links)
-	drawn := math.Min(float64(l.links), float64(l.v.Strokes))
-	p.OneStrokeFor = math.Max(1, 1/keep)
-	ink := 0.22 * math.Min(1.5, math.Pow(2500/drawn, 0.35))
+	drawn := min(float64(l.links), float64(l.v.Strokes))
+	p.OneStrokeFor = max(1, 1/keep)
+	ink := 0.22 * min(1.5, math.Pow(2500/drawn, 0.35))
 	width := 0.75
 	if drawn < 2000 {
 		width = 0.9
@@ -55,7 +55,7 @@ func (l *layout) first() int {
 }
 
 func smooth(t float64) float64 {
-	t = math.Max(0, math.Min(1, t))
+	t = max(0, min(1, t))
 	return t * t * (3 - 2*t)
 }
 
@@ -99,12 +99,12 @@ func (l *layout) stroke(p *Picture, stars map[int32]*star, v, k int, ink, width,
 	}
 	tone := Tone(float64(l.c.Pull[t]))
 	ember := t == l.top
-	if whole > 0.004 {
+	if whole > 0.004 && (l.v.Strokes >= 2000 || k%3 == 0) { // while something moves, one in three will do
 		l.bow(p, sx, sy, tx, ty, width, whole, tone, ember)
 	}
 	share := l.share(t)
-	reach := l.r * math.Min(2.2, 0.07+1.55*math.Sqrt(share)) * (0.7 + 0.6*hash(uint64(k)+99))
-	length := math.Min(dist, reach)
+	reach := l.r * min(2.2, 0.07+1.55*math.Sqrt(share)) * (0.7 + 0.6*hash(uint64(k)+99))
+	length := min(dist, reach)
 	ux, uy := dx/dist, dy/dist
 	s := stars[t]
 	if s == nil {
@@ -118,13 +118,13 @@ func (l *layout) stroke(p *Picture, stars map[int32]*star, v, k int, ink, width,
 	i := s.nearest(math.Atan2(dy, dx))
 	s.rays[i].count++
 	join := 0.46 * length
-	s.rays[i].reach = math.Max(s.rays[i].reach, join)
+	s.rays[i].reach = max(s.rays[i].reach, join)
 	sin, cos := math.Sincos(s.angle(i))
 	curve(p, tx+ux*length, ty+uy*length, tx+ux*0.76*length, ty+uy*0.76*length, tx+cos*join, ty+sin*join, width, 0.7*ink, 1.2*ink, tone, ember)
 }
 
 // pieces a curve is cut into.
-const pieces = 5
+const pieces = 4
 
 // curve appends a quadratic from (x0,y0) by way of (cx,cy) to (x1,y1), its alpha rising towards the end.
 func curve(p *Picture, x0, y0, cx, cy, x1, y1, width, from, to, tone float64, ember bool) {
@@ -165,7 +165,7 @@ func (l *layout) spokes(p *Picture, stars map[int32]*star, drawn float64) {
 			if j != l.top {
 				w, alpha = 0.8*w, 0.55
 			}
-			w = math.Min(w, 0.9*l.radius(j))
+			w = min(w, 0.9*l.radius(j))
 			sin, cos := math.Sincos(s.angle(i))
 			in := 0.8 * l.radius(j)
 			p.Spokes = append(p.Spokes, Stroke{X0: x + cos*in, Y0: y + sin*in, X1: x + cos*r.reach, Y1: y + sin*r.reach, W0: w, W1: 0.3 * l.v.Scale, Alpha: alpha, Tone: tone, Ember: j == l.top})

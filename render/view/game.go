@@ -114,7 +114,7 @@ func (g *Game) paint(moving bool) {
 	g.view = scene.View{Width: float64(g.width), Height: float64(g.height), Scale: g.scale, Members: s.Members, Arrival: ease(g.arrival), Strokes: strokes,
 		Zoom: s.Zoom, PanX: s.PanX, PanY: s.PanY, Ceiling: s.Ceiling, Following: s.Follow, Label: s.Label}
 	g.theme = raster.Named(s.Theme)
-	g.picture = scene.Arrange(g.in.columns, g.view)
+	g.picture = scene.Again(g.picture, g.in.columns, g.view)
 	g.canvas = raster.NewCanvas(g.width, g.height, g.canvas)
 	raster.Paint(g.canvas, g.picture, g.theme)
 	g.dirty = true

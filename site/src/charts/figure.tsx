@@ -14,6 +14,7 @@ export interface FigureProps {
   name: string; // of the file
   table: () => Table;
   draw: (width: number) => Element | undefined;
+  of: readonly unknown[]; // what the chart is drawn from: it is drawn again when one of these is another
   class?: string;
 }
 
@@ -36,24 +37,27 @@ export function Figure(p: FigureProps): JSX.Element {
   const ref = useRef<HTMLDivElement>(null);
   const [width, setWidth] = useState(0);
   const [open, setOpen] = useState(false);
+  const [near, setNear] = useState(false); // only what is on the screen, or nearly, is drawn
   useLayoutEffect(() => {
     const el = ref.current;
     if (!el) return;
     const watch = new ResizeObserver(() => setWidth(Math.floor(el.clientWidth)));
     watch.observe(el);
     setWidth(Math.floor(el.clientWidth));
-    return () => watch.disconnect();
+    const sight = new IntersectionObserver((seen) => setNear(seen.some((s) => s.isIntersecting)), { rootMargin: "200px" });
+    sight.observe(el);
+    return () => { watch.disconnect(); sight.disconnect(); };
   }, []);
   useLayoutEffect(() => {
     const el = ref.current;
-    if (!el || width === 0) return;
+    if (!el || width === 0 || !near) return;
     const chart = p.draw(width);
     chart?.setAttribute("aria-hidden", "true");
     if (chart) el.replaceChildren(chart);
     else el.replaceChildren();
-  });
+  }, [width, near, ...p.of]);
   const save = (): void => {
-    const chart = ref.current?.querySelector("svg");
+    const chart = p.draw(width || 440)?.querySelector("svg") ?? ref.current?.querySelector("svg");
     if (!chart) return;
     const copy = chart.cloneNode(true) as SVGElement;
     copy.setAttribute("xmlns", "http://www.w3.org/2000/svg");

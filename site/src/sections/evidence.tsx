@@ -61,7 +61,7 @@ export function EvidenceBlock(): JSX.Element | null {
         {leader && <Origin m={leader} />}
         <Figure
           title="Shares as the log went" name="log-shares" class="plain" summary={`At ${count(e.members)} members the leader held ${percent(e.track.share.at(-1) ?? 0)} and the top four ${percent(e.top4)}.`}
-          draw={(width) => track(e.track, width)}
+          of={[e]} draw={(width) => track(e.track, width)}
           table={() => ({ columns: ["members", "leader", "top four", "HHI"], rows: e.track.members.map((n, i) => [n, e.track.share[i] ?? 0, e.track.top4[i] ?? 0, e.track.hhi[i] ?? 0]) })}
         />
         <details>

@@ -44,7 +44,7 @@ export function LawSection(p: { entry: Entry }): JSX.Element | null {
         <Figure
           title="Density of energies p(ε)" name="law" class="plain"
           summary={`Energies from ${number(mean?.[0] ?? 0)} to ${number(mean?.at(-1) ?? 0)}; the fittest have energy 0. ${leader ? `The leader ${leader.id} has energy ${number(leader.energy)}.` : ""}`}
-          draw={(w) => density(s.curves!, leader, held.value?.curves, w)}
+          of={[s.curves, leader?.id, leader?.energy, held.value]} draw={(w) => density(s.curves!, leader, held.value?.curves, w)}
           table={() => ({ columns: ["energy", "density"], rows: s.curves!.eps.map((e, i) => [e, s.curves!.density[i] ?? 0]) })}
         />
       )}
@@ -93,7 +93,7 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
       {s.criticalSharpness !== null && (
         <Figure
           title="Margin" name="margin" class="plain" summary={`Margin ${number(s.margin)}: ${s.verdict.margin}. A condensate forms where it is below 1, above sharpness ${number(s.criticalSharpness)}.`}
-          draw={(w) => gauge(s, sharp, w)} table={() => ({ columns: ["quantity", "value"], rows: [["sharpness", sharp], ["critical sharpness", s.criticalSharpness ?? ""], ["margin", s.margin ?? "infinite"]] })}
+          of={[s, sharp]} draw={(w) => gauge(s, sharp, w)} table={() => ({ columns: ["quantity", "value"], rows: [["sharpness", sharp], ["critical sharpness", s.criticalSharpness ?? ""], ["margin", s.margin ?? "infinite"]] })}
         />
       )}
       <dl class="pairs">
@@ -104,15 +104,15 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
       </dl>
       <div class="trio">
         <Figure
-          title="Growth rate f(ε)" name="growth-rate" summary="The exponent with which a member's tickets grow, falling with energy." draw={(w) => exponent(s, g, h, w)}
+          title="Growth rate f(ε)" name="growth-rate" summary="The exponent with which a member's tickets grow, falling with energy." of={[s, g, h]} draw={(w) => exponent(s, g, h, w)}
           table={() => ({ columns: ["energy", "f"], rows: (s.curves?.eps ?? []).map((e, i) => [e, s.curves?.exponent?.[i] ?? ""]) })}
         />
         <Figure
-          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network with one standard error.`} draw={(w) => occupation(s, g, h, w)}
+          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network with one standard error.`} of={[s, g, h]} draw={(w) => occupation(s, g, h, w)}
           table={() => ({ columns: ["energy", "counted n", "standard error", "members"], rows: (g?.counted ?? []).map((c) => [c.eps, c.n, c.error, c.members]) })}
         />
         <Figure
-          title="Potential βμ over β" name="potential" summary={`Rises to 0 ${s.criticalSharpness !== null ? `at the critical sharpness ${number(s.criticalSharpness)} and stays there` : "without reaching it: this law has no critical sharpness"}.`} draw={(w) => potential(s, sharp, w)}
+          title="Potential βμ over β" name="potential" summary={`Rises to 0 ${s.criticalSharpness !== null ? `at the critical sharpness ${number(s.criticalSharpness)} and stays there` : "without reaching it: this law has no critical sharpness"}.`} of={[s, sharp]} draw={(w) => potential(s, sharp, w)}
           table={() => ({ columns: ["sharpness", "beta mu"], rows: (s.curves?.beta ?? []).map((b, i) => [b, s.curves?.betaMuOver?.[i] ?? ""]) })}
         />
       </div>
@@ -133,7 +133,7 @@ export function SharesSection(): JSX.Element {
           {g.from > 1 && <p class="caption">This entry begins with the network the log left, at {count(g.from)} members; how its shares went before stands under Evidence.</p>}
           {g.path.members.length > 3 && <Figure
             title="Share of all links" name="shares" class="plain" summary={`${g.leader.id} leads with ${percent(g.leader.share)} at ${count(g.members)} members; ${g.leadChanges} lead changes that lasted.`}
-            draw={(w) => shares(g, w)}
+            of={[g]} draw={(w) => shares(g, w)}
             table={() => ({ columns: ["members", "leader's share", "top four", "HHI", ...g.ranking.slice(0, g.path.followed.length).map((r) => r.id)], rows: g.path.members.map((n, i) => [n, g.path.share[i] ?? 0, g.path.top4[i] ?? 0, g.path.hhi[i] ?? 0, ...g.path.followed.map((f) => f[i] ?? 0)]) })}
             note="Dashed: whoever leads. Marks at the top: the lead changed for good (for 5 % of growth at least)."
           />}
@@ -178,7 +178,7 @@ export function OutlookSection(p: { entry: Entry }): JSX.Element {
         <>
           {o.runs < p.entry.outlook.runs && <p class="caption">Partial: {o.runs} of {p.entry.outlook.runs} runs.</p>}
           <Figure
-            title="Leader's share from today to the planned size" name="outlook" class="plain" summary={o.sentences.join(" ")} draw={(w) => fan(o, w)}
+            title="Leader's share from today to the planned size" name="outlook" class="plain" summary={o.sentences.join(" ")} of={[o]} draw={(w) => fan(o, w)}
             table={() => ({ columns: ["members", "2.5 %", "10 %", "median", "90 %", "97.5 %", "mean"], rows: o.bySize.map((b) => [b.members, b.q025, b.q10, b.q50, b.q90, b.q975, b.mean]) })}
             note="Bands: 95 and 80 of 100 runs. Whoever leads at each size."
           />

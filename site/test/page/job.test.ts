@@ -79,7 +79,7 @@ pageTest("a log with two broken rows, from file to brief and to a fresh profile"
   await page.getByRole("button", { name: "Run the outlook" }).click();
   await says(page, "#outlook header", /40 runs/);
   await page.getByRole("button", { name: "Run again" }).waitFor();
-  const outlook = await says(page, "#outlook-says", /At 20,000 members the leader holds .* It passes 20 % in .* Today's leader still leads/);
+  const outlook = await says(page, "#outlook-says", /At 20,000 members the leader holds .*It passes 20 % in .*Today's leader still leads/);
 
   // The link, in a fresh profile: the same numbers to the last digit.
   await page.getByRole("button", { name: "Copy link" }).first().click();
