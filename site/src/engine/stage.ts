@@ -67,6 +67,7 @@ export class Stage {
   private frame: HTMLIFrameElement | undefined;
   private window: StageWindow | undefined;
   private wake: () => void = () => {};
+  private drawNow: () => void = () => {};
   private settings: string | undefined;
   private network: Uint8Array<ArrayBuffer> | undefined;
   private rebuilds = 0;
@@ -136,6 +137,11 @@ export class Stage {
       parked = undefined;
       if (f) next(f);
     };
+    this.drawNow = () => {
+      const f = parked;
+      parked = undefined;
+      f?.(w.performance.now());
+    };
     w.stageBusy = (on) => {
       busy = on;
       if (on) this.wake();
@@ -172,7 +178,7 @@ export class Stage {
     const w = this.window;
     if (!w?.stage) return;
     w.stage.load(new w.Uint8Array(bytes.buffer, bytes.byteOffset, bytes.byteLength));
-    this.wake();
+    this.drawNow(); // before the charts: the picture is what is looked at while something is dragged
   }
 
   set(s: StageSettings): void {

@@ -6,7 +6,7 @@ import { current, doc, isDragging, projection, say, tables } from "./document";
 import { engines, digests, fault, grown, growing, outlookFault, outlooks, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
 import { keep, kept } from "./storage";
 import type { Casebook, Grown, Outlook, Solved } from "./types";
-import { shown, theme, follow } from "./view";
+import { follow, said, shown, theme } from "./view";
 import { percent, count } from "../words/format";
 
 /** Larger networks are grown only when asked for. */
@@ -33,7 +33,7 @@ function report(e: unknown): void {
 
 async function askSolve(book: Casebook, key: string): Promise<void> {
   try {
-    const r = await engines.main.askNewest<Solved>("solve", { casebook: book, entry: 0, curves: true });
+    const r = await engines.side.askNewest<Solved>("solve", { casebook: book, entry: 0, curves: true });
     if (r) batch(() => { solved.value = { key, value: r.body }; fault.value = undefined; });
   } catch (e) {
     report(e);
@@ -121,11 +121,11 @@ const markSize = 112;
 
 async function digestOf(book: Casebook, t: string): Promise<Digest> {
   try {
-    const s = await engines.marks.ask<Solved>("solve", { casebook: book, entry: 0 });
+    const s = await engines.side.ask<Solved>("solve", { casebook: book, entry: 0 });
     const large = (book.entries[0]?.growth.members ?? 0) > unasked;
     if (large) return { heading: s.body.verdict.heading, line: "Not grown yet.", mark: undefined };
-    const g = await engines.marks.ask<Grown>("grow", { casebook: book, entry: 0 });
-    const p = await engines.marks.ask("picture", { width: markSize, height: markSize, scale: 1, members: g.body.members, theme: t, strokes: 700, bare: true });
+    const g = await engines.side.ask<Grown>("grow", { casebook: book, entry: 0 });
+    const p = await engines.side.ask("picture", { width: markSize, height: markSize, scale: 1, members: g.body.members, theme: t, strokes: 700, bare: true });
     const rgba = column<Uint8Array<ArrayBuffer>>(p, "rgba");
     const image = rgba && new ImageData(new Uint8ClampedArray(rgba), markSize, markSize);
     return { heading: s.body.verdict.heading, line: `${g.body.leader.id} leads with ${percent(g.body.leader.share)} at ${count(g.body.members)}.`, mark: image };
@@ -196,7 +196,8 @@ export function connect(): void {
     void theme.value;
     if (!tables.value) return;
     clearTimeout(markTimer);
-    markTimer = window.setTimeout(() => void mark(), isDragging() ? 900 : 350);
+    // While the stage starts, and while something is dragged, marks wait.
+    markTimer = window.setTimeout(() => void mark(), !said.peek() ? 2500 : isDragging() ? 900 : 350);
   });
   let keepTimer = 0;
   effect(() => {

@@ -3,10 +3,11 @@ import { computed, signal } from "@preact/signals";
 import { Engine, Failure, type Source } from "../engine/engine";
 import type { Grown, Outlook, Solved } from "./types";
 
-/** The engine that answers while something is dragged, and those for long work. */
+/** The engines: one grows the network on show, one beside it solves and makes the marks, one reads logs, the pool looks
+ * forward. */
 export interface Engines {
   main: Engine;
-  marks: Engine;
+  side: Engine;
   reader: Engine;
   pool: Engine[];
 }
@@ -15,7 +16,7 @@ export let engines: Engines;
 
 export function startEngines(source: Source): void {
   const cores = Math.max(1, Math.min(4, (navigator.hardwareConcurrency || 2) - 1));
-  engines = { main: new Engine(source), marks: new Engine(source), reader: new Engine(source), pool: Array.from({ length: cores }, () => new Engine(source)) };
+  engines = { main: new Engine(source), side: new Engine(source), reader: new Engine(source), pool: Array.from({ length: cores }, () => new Engine(source)) };
 }
 
 /** A result and the question it answers. */
