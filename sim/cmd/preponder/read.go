@@ -119,6 +119,7 @@ func describe(r service.ReadReport, body json.RawMessage) (json.RawMessage, erro
 		"leader": map[string]any{"id": r.Leader.ID, "links": r.Leader.Links, "share": r.Leader.Share}, "top4": r.Top4, "hhi": r.HHI, "gini": r.Gini,
 		"verdict": e.Verdict, "heading": s.Heading, "meaning": s.Meaning, "caution": s.Caution,
 		"groundIntegral": e.Ground, "margin": e.Margin, "rule": e.Rule, "check": e.Check, "notes": e.Notes, "top": top,
+		"kernel": evidence.Range{Estimate: &e.Rule.Kernel}, "openShare": evidence.Range{Estimate: &e.Rule.OpenShare},
 		"backTest": nil, "holdOut": nil,
 	}
 	return json.Marshal(out)

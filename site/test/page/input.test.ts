@@ -231,3 +231,28 @@ pageTest("case files: saved, opened again, refused with a sentence", {}, async (
   assert.equal(await page.getByLabel("Title of the casebook").inputValue(), "Larkmoor parts exchange");
   assert.ok(file);
 });
+
+pageTest("a lost drawing context comes back by itself", {}, async ({ page, trouble }) => {
+  await drawn(page);
+  const before = await text(page, ".readout .lead dd");
+  await page.evaluate(() => {
+    const frame = document.querySelector("iframe")!;
+    frame.dataset["old"] = "";
+    frame.contentDocument!.querySelector("canvas")!.getContext("webgl2")!.getExtension("WEBGL_lose_context")!.loseContext();
+  });
+  await page.waitForFunction(() => document.querySelector("iframe")?.dataset["old"] === undefined);
+  await page.waitForFunction(() => (document.querySelector("iframe")?.contentWindow as unknown as { stage?: object } | null)?.stage !== undefined);
+  await page.getByRole("button", { name: "By arrival" }).click();
+  await says(page, ".ruler", /first to arrive/);
+  assert.equal(await text(page, ".readout .lead dd"), before);
+  trouble.splice(0, trouble.length, ...trouble.filter((t) => !/WebGL|CONTEXT_LOST/i.test(t)));
+});
+
+pageTest("a browser that denies storage is told so, and the rest goes on", {}, async ({ page }) => {
+  await page.addInitScript(() => { Storage.prototype.setItem = () => { throw new DOMException("denied", "QuotaExceededError"); }; });
+  await page.reload();
+  await drawn(page);
+  await says(page, ".kept", /not kept: this browser denies storage\. Save a case file/);
+  await page.getByRole("button", { name: "Duplicate If workshops compare harder" }).click();
+  await says(page, ".casebook > header", /5 entries/);
+});

@@ -1,0 +1,83 @@
+package main
+
+import (
+	"bytes"
+	"encoding/json"
+	"errors"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+)
+
+func answer(t *testing.T, in string, args ...string) (string, error) {
+	t.Helper()
+	var out bytes.Buffer
+	err := run(args, strings.NewReader(in), &out)
+	return out.String(), err
+}
+
+func TestWalkThrough(t *testing.T) {
+	dir := t.TempDir()
+	file := func(name, text string) string {
+		path := filepath.Join(dir, name)
+		if err := os.WriteFile(path, []byte(text), 0o644); err != nil {
+			t.Fatal(err)
+		}
+		return path
+	}
+	must := func(args ...string) string {
+		t.Helper()
+		out, err := answer(t, "", args...)
+		if err != nil {
+			t.Fatalf("%v: %v", args, err)
+		}
+		return out
+	}
+	log := file("larkmoor.csv", must("sample"))
+	read := map[string]any{}
+	if err := json.Unmarshal([]byte(must("read", log, "--map", "source=source,target=3")), &read); err != nil {
+		t.Fatal(err)
+	}
+	if read["verdict"] != "condensate" || read["members"] != 5000.0 {
+		t.Errorf("the sample reads as %v with %v members", read["verdict"], read["members"])
+	}
+	book := file("book.json", must("read", log, "--condensed"))
+	whole := must("outlook", book, "--runs", "0-9")
+	a, b := file("a.json", must("outlook", book, "--runs", "0-3", "--partial")), file("b.json", must("outlook", "--partial", "--runs", "4-9", book))
+	if must("gather", b, a) != whole {
+		t.Error("two parts gathered give another answer than one run")
+	}
+	grown := filepath.Join(dir, "grown.csv")
+	must("grow", file("one.json", `{"casebook":1,"entries":[{"growth":{"members":50}}]}`), "--log", grown)
+	if lines, err := os.ReadFile(grown); err != nil || strings.Count(string(lines), "\n") != 99 {
+		t.Errorf("the log of 50 members has %d lines, %v", strings.Count(string(lines), "\n"), err)
+	}
+}
+
+func TestMisuseAndBadInput(t *testing.T) {
+	for _, c := range []struct {
+		args   []string
+		in     string
+		misuse bool
+		says   string
+	}{
+		{nil, "", true, "say what to do"},
+		{[]string{"fly"}, "", true, `"fly"`},
+		{[]string{"solve"}, "", true, "name one file"},
+		{[]string{"solve", "-", "--wrong"}, "", true, "-wrong"},
+		{[]string{"outlook", "-", "--runs", "many"}, "{}", true, "--runs"},
+		{[]string{"gather"}, "", true, "parts"},
+		{[]string{"solve", "-"}, "{}", false, "not a casebook"},
+		{[]string{"solve", "-"}, "hello", false, "not a Preponder code"},
+		{[]string{"solve", "-", "--entry", "4"}, `{"casebook":1,"entries":[{}]}`, false, "There is no entry 4"},
+		{[]string{"read", "-"}, "", false, "The file is empty"},
+		{[]string{"read", "-", "--map", "source=x"}, "a,b\n1,2\n", false, `no column "x"`},
+		{[]string{"solve", "nowhere.json"}, "", false, "nowhere.json"},
+	} {
+		_, err := answer(t, c.in, c.args...)
+		if err == nil || errors.Is(err, errUsage) != c.misuse || !strings.Contains(err.Error(), c.says) {
+			t.Errorf("%v: %v", c.args, err)
+		}
+	}
+}
