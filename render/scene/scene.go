@@ -137,6 +137,7 @@ func newLayout(c Columns, v View) *layout {
 	l.cy = v.Height/2 + v.PanY*l.r
 	if !v.Bare {
 		l.cy -= 18 * v.Scale
+		l.cx -= aside(v)
 	}
 	l.dot = r * math.Sqrt(0.03) * math.Sqrt(z)
 	return l
@@ -155,12 +156,27 @@ func directions(n int) []spot {
 
 func angle(j int) float64 { return math.Mod(float64(j)*golden, 2*math.Pi) - math.Pi/2 }
 
+// narrow is the width in CSS pixels below which figures stand above the picture, not beside it.
+const narrow = 600
+
+// aside is how far left of the middle the disc lies, to leave room for the figures on its right.
+func aside(v View) float64 {
+	if w := v.Width / v.Scale; w < narrow || v.Label > 1 {
+		return 0
+	}
+	return 36 * v.Scale
+}
+
 // Fit returns the radius of the disc that fits the view.
 func Fit(v View) float64 {
 	if v.Bare {
 		return max(4, min(v.Width, v.Height)/2-1)
 	}
-	return max(20, min(v.Height/v.Scale-62, v.Width/v.Scale-24)/2-10) * v.Scale
+	w, h := v.Width/v.Scale, v.Height/v.Scale
+	if w >= narrow {
+		w -= 96
+	}
+	return max(20, min(h-62, w-24)/2-10) * v.Scale
 }
 
 func (l *layout) share(j int32) float64 {

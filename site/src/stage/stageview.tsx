@@ -186,7 +186,7 @@ function Labels(): JSX.Element | null {
   const zoomed = zoom.value.zoom > 1;
   const marks = [...s.rings.map((r, i) => ({ r, name: ringNames[i] ?? "" })), { r: s.r, name: "all" }];
   let least = Infinity;
-  const texts = [...marks].reverse().filter((m) => { const ok = m.name !== "" && least - m.r > 34; if (ok || m.name === "all") least = m.r; return ok || m.name === "all"; });
+  const texts = [...marks].reverse().filter((m) => { const ok = m.name !== "" && least - m.r > (projector.value ? 62 : 34); if (ok || m.name === "all") least = m.r; return ok || m.name === "all"; });
   return (
     <div class="labels" aria-hidden="true">
       {leader && label && <div class="plate" style={{ left: `${label.x}px`, top: `${label.y}px` }}><b>{nameOf(leader.member)}</b> {percent(leader.share)} of links</div>}
@@ -228,9 +228,9 @@ function Readout(): JSX.Element | null {
   const last = reigns.at(-1);
   return (
     <dl class="readout" aria-live="off">
-      {capped ? <div class="lead"><dt>At the ceiling</dt><dd>{s.capped.slice(0, 3).map(nameOf).join(", ")}</dd></div>
+      {capped ? <div class="lead"><dt>At the ceiling</dt><dd>{s.capped.slice(0, 3).map(nameOf).join(", ")} {s.capped.length === 1 && s.leader ? percent(s.leader.share) : ""}</dd></div>
         : s.leader && <div class="lead"><dt>Leader</dt><dd>{nameOf(s.leader.member)} {percent(s.leader.share)}</dd></div>}
-      {s.next && <div><dt>{capped ? "Largest" : "Runner-up"}</dt><dd>{capped && s.leader ? `${nameOf(s.leader.member)} ${percent(s.leader.share)}` : `${nameOf(s.next.member)} ${percent(s.next.share)}`}</dd></div>}
+      {s.next && <div><dt>Runner-up</dt><dd>{nameOf(s.next.member)} {percent(s.next.share)}</dd></div>}
       <div><dt>Members</dt><dd>{count(s.members)}</dd></div>
       <div class="changes"><dt>Lead changes</dt><dd>{Math.max(0, reigns.length - 1)}{last && reigns.length > 1 && <small>last at {count(last.from)} members</small>}</dd></div>
     </dl>
