@@ -48,15 +48,19 @@ type document struct {
 	Names    bool            `json:"names"`
 }
 
-func (d document) read() (casebook.Casebook, error) { return casebook.Read(d.Casebook) }
+// documentOf reads the casebook a request is about.
+func documentOf(p wire.Packet) (casebook.Casebook, document, error) {
+	var d document
+	if err := json.Unmarshal(p.Body, &d); err != nil {
+		return casebook.Casebook{}, d, err
+	}
+	c, err := casebook.Read(d.Casebook)
+	return c, d, err
+}
 
 // encode answers with the code of a casebook and what it holds. Names of members stay out unless asked for.
 func encode(_ *Engine, p wire.Packet, _ Step) (reply, error) {
-	var d document
-	if err := json.Unmarshal(p.Body, &d); err != nil {
-		return reply{}, err
-	}
-	c, err := d.read()
+	c, d, err := documentOf(p)
 	if err != nil {
 		return reply{}, err
 	}
@@ -78,11 +82,7 @@ func encode(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 
 // file answers with the case file.
 func file(_ *Engine, p wire.Packet, _ Step) (reply, error) {
-	var d document
-	if err := json.Unmarshal(p.Body, &d); err != nil {
-		return reply{}, err
-	}
-	c, err := d.read()
+	c, d, err := documentOf(p)
 	if err != nil {
 		return reply{}, err
 	}
