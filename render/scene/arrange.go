@@ -135,7 +135,7 @@ func (l *layout) members(p *Picture) {
 		x, y := l.place(k)
 		if all || l.received[j] >= max(atLeast, 1) || k == l.top || j == l.v.Following {
 			p.Discs = append(p.Discs, Disc{Member: k, X: x, Y: y, R: l.radius(k), Tone: tone, Share: l.share(k), Leader: k == l.top, Faint: l.received[j] == 0,
-				Capped: l.v.Ceiling > 0 && l.received[j] > 0 && l.share(k) >= l.v.Ceiling-0.015})
+				Capped: l.v.Ceiling > 0 && l.received[j] > 0 && l.share(k) >= 0.97*l.v.Ceiling})
 			continue
 		}
 		p.Grain = append(p.Grain, Grain{x, y, 0.6 + 0.4*min(3, float64(l.received[j])/m), tone})

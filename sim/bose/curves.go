@@ -50,6 +50,9 @@ func (s *Spectrum) Curves(beta float64, rule Rule, sol Solution) Curves {
 	}
 	top := muAxis(beta, sol.CriticalSharpness)
 	r := rule.Balance()
+	if r == 0 {
+		return c // every link is dealt to anyone: there is no potential
+	}
 	start, mu := math.NaN(), 0.0
 	for i := 1; i <= muPoints; i++ {
 		b := top * float64(i) / muPoints

@@ -64,7 +64,7 @@ func Solve(l law.Law, beta float64, rule Rule) (Solution, error) {
 	nan := math.NaN()
 	s := Solution{Balance: rule.Balance(), CriticalSharpness: nan, DissolveHeadStart: nan, DissolveOpenShare: nan, Mu: nan}
 	low, high := l.Support()
-	if beta == 0 || low == high {
+	if beta == 0 || low == high || s.Balance == 0 {
 		f := s.Balance / (1 + s.Balance)
 		s.Regime, s.GroundIntegral, s.Margin, s.BetaMu, s.MeanFitness = Level, math.Inf(1), math.Inf(1), math.Log(f), 1
 		s.lead(f)
@@ -74,6 +74,9 @@ func Solve(l law.Law, beta float64, rule Rule) (Solution, error) {
 		if beta > 0 {
 			s.Mu = s.BetaMu / beta
 		}
+		if s.Balance == 0 {
+			s.MeanFitness = meanFitness(l, beta)
+		}
 		return s, nil
 	}
 	if math.IsInf(low, -1) {
@@ -81,6 +84,14 @@ func Solve(l law.Law, beta float64, rule Rule) (Solution, error) {
 		return s, nil
 	}
 	return NewSpectrum(l).Solve(beta, rule)
+}
+
+// meanFitness returns E[exp(-beta eps)], 1 where the law has no ground level to measure from.
+func meanFitness(l law.Law, beta float64) float64 {
+	if low, _ := l.Support(); math.IsInf(low, -1) {
+		return 1
+	}
+	return NewSpectrum(l).Mean(func(e float64) float64 { return math.Exp(-beta * e) })
 }
 
 // Solve is the package's Solve for a law with a ground level and at least two energies, at sharpness beta > 0.

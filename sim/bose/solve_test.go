@@ -154,6 +154,17 @@ func TestLevelAndRecords(t *testing.T) {
 	if s.Regime != Level || math.Abs(s.LeaderExponent+0.5) > 1e-15 || math.Abs(s.Halving-4) > 1e-12 {
 		t.Errorf("level: %+v", s) // first movers' links grow as the square root of time
 	}
+	// Open share 1: fitness counts for nothing.
+	for _, l := range []law.Law{law.Power{Theta: 1}, law.Lognormal{Sigma: 1}, law.NewTiers([]float64{0, 1}, []float64{1, 1})} {
+		s, err := Solve(l, 3, Rule{Links: 2, OpenShare: 1})
+		if err != nil || s.Regime != Level || s.LeaderExponent != -1 || s.Halving != 2 {
+			t.Errorf("open share 1: %+v, %v", s, err)
+		}
+		CurvesOf(l, 3, Rule{Links: 2, OpenShare: 1}, s)
+		if s, err = Solve(l, 3, Rule{Links: 2, OpenShare: 1 - 1e-9}); err != nil {
+			t.Errorf("open share just below 1: %+v, %v", s, err)
+		}
+	}
 	if s, _ := Solve(law.Lognormal{Sigma: 1}, 1, plain); s.Regime != Records {
 		t.Errorf("lognormal: %v", s.Regime)
 	}

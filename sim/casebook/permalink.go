@@ -51,6 +51,7 @@ func Decode(text string) (Casebook, error) {
 	if at := strings.LastIndex(text, "#c="); at >= 0 {
 		text = text[at+3:]
 	}
+	text, _, _ = strings.Cut(text, "&") // what follows says how to look at it
 	if len(text) > MaxCode {
 		return none, fmt.Errorf("the code is %d characters long; %d are allowed", len(text), MaxCode)
 	}

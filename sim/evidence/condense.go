@@ -12,7 +12,7 @@ import (
 )
 
 // Sizes of what a casebook keeps of a log.
-const topMembers, pathPoints = 16, 32
+const topMembers, explained, pathPoints = 16, 6, 20 // explained: members whose links are split by origin
 
 // Limits checked on the way in.
 const maxSingles, maxClasses, maxMembers = 200, 20000, growth.MaxMembers
@@ -94,7 +94,7 @@ func Condense(l *Rows, s *Study, label string) *Condensed {
 	received := h.Received()
 	spread := share.Of(received)
 	c := &Condensed{Label: label, Named: true, Rows: l.Read, Used: len(l.Time), LeftOut: map[string]int{}, Members: h.Members(), Links: spread.Links, Choices: h.Choices,
-		PerArrival: round(h.PerArrival(), 6), Top4: spread.Top4, HHI: spread.HHI, Gini: spread.Gini, Verdict: s.Verdict, NoTop: s.NoTop, Rule: s.Rule, Law: s.Law, Draws: []Law{}, Classes: []Class{}, Notes: h.notes()}
+		PerArrival: round(h.PerArrival(), 6), Top4: spread.Top4, HHI: spread.HHI, Gini: spread.Gini, Verdict: s.Verdict, NoTop: s.NoTop, Rule: s.Rule.trimmed(), Law: s.Law, Draws: []Law{}, Classes: []Class{}, Notes: h.notes()}
 	for _, p := range l.Problems {
 		c.LeftOut[p.Reason] = p.Count
 	}
@@ -109,7 +109,7 @@ func Condense(l *Rows, s *Study, label string) *Condensed {
 	c.Check = s.check(c.Notes)
 	c.keepMembers(s, received)
 	path := share.Along(h.Target, h.Before, min(10, h.Members()), h.Members(), pathPoints, nil)
-	c.Track = Track{path.Members, rounds(path.Share, 5), rounds(path.Top4, 5), rounds(path.HHI, 1)}
+	c.Track = Track{path.Members, rounds(path.Share, 4), rounds(path.Top4, 4), rounds(path.HHI, 0)}
 	return c
 }
 
@@ -160,17 +160,20 @@ func (c *Condensed) keepMembers(s *Study, received []int32) {
 	}
 	var origins []Origin
 	if s.Fitness != nil {
-		origins = s.Origins(top)
+		origins = s.Origins(top[:min(explained, len(top))])
 	}
 	single := map[int32]bool{}
 	for i, j := range top {
 		single[j] = true
 		m := Member{ID: h.Names[j], Links: received[j], Arrived: j}
 		if s.Fitness != nil {
-			p, o := s.Fitness[j], origins[i]
+			p := s.Fitness[j]
 			r := ranged(Interval{p.mean, p.low, p.high})
 			m.Fitness, m.Spread = &r, [2]float64{round(p.log, 4), round(p.sd, 4)}
-			m.Origin = &Split{sig(o.Mean), sig(o.Early), sig(o.Good), sig(o.Chance), [2]float64{sig(o.GoodLow), sig(o.GoodHigh)}}
+			if i < explained {
+				o := origins[i]
+				m.Origin = &Split{sig(o.Mean), sig(o.Early), sig(o.Good), sig(o.Chance), [2]float64{sig(o.GoodLow), sig(o.GoodHigh)}}
+			}
 		}
 		c.Top = append(c.Top, m)
 	}
@@ -335,12 +338,12 @@ func finite(v float64) *float64 {
 	return &v
 }
 
-// sig keeps five digits: more than the log can tell, few enough for a link.
+// sig keeps four digits: more than the log can tell, few enough for a link.
 func sig(v float64) float64 {
 	if v == 0 || math.IsNaN(v) || math.IsInf(v, 0) {
 		return v
 	}
-	return round(v, 4-int(math.Floor(math.Log10(math.Abs(v)))))
+	return round(v, 3-int(math.Floor(math.Log10(math.Abs(v)))))
 }
 
 func round(v float64, digits int) float64 {
@@ -357,6 +360,13 @@ func rounds(v []float64, digits int) []float64 {
 		out[i] = round(x, digits)
 	}
 	return out
+}
+
+func (r Rule) trimmed() Rule {
+	for _, v := range []*float64{&r.Gain, &r.Kernel, &r.HeadStart, &r.Fading, &r.Idling, &r.OpenShare, &r.OpenGain, &r.Bits.Fitness, &r.Bits.Extended} {
+		*v = round(*v, 4)
+	}
+	return r
 }
 
 func (l *Law) trim() {

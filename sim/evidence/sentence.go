@@ -56,7 +56,7 @@ func (c Condensed) Words() (heading, meaning string) {
 			meaning += " No top in sight: a fitter newcomer can still take over."
 		}
 	case FitGetRich:
-		heading = "Fit-get-rich"
+		heading = "The fit get richer"
 		meaning = "Fitter members overtake, yet every member's share fades in the end."
 	case Level:
 		heading = "Level field"
@@ -69,6 +69,9 @@ func (c Condensed) Words() (heading, meaning string) {
 		if len(c.Check.Reasons) > 0 {
 			meaning = c.Check.Reasons[0]
 		}
+	}
+	if c.Members < SureMembers && (c.Verdict == Condensate || c.Verdict == FitGetRich) {
+		meaning += fmt.Sprintf(" Take it with care: with %d members a verdict is rarely sure.", c.Members)
 	}
 	return heading, meaning
 }

@@ -55,6 +55,11 @@ func Gather(parts []*Part) (*Outlook, error) {
 	if len(parts) == 0 {
 		return nil, errors.New("there is no part to gather")
 	}
+	for _, p := range parts {
+		if p == nil {
+			return nil, errors.New("a part is empty")
+		}
+	}
 	first := parts[0]
 	var runs []Run
 	for _, p := range parts {

@@ -106,7 +106,7 @@ func (p Plan) run(k int, base *growth.Start, leader int, at []int32, step func(f
 
 // id names the plan by its content.
 func (p Plan) id() string {
-	b, err := json.Marshal([]any{p.About, p.Horizon, p.Limit})
+	b, err := json.Marshal([]any{p.About, p.Horizon})
 	if err != nil {
 		panic("outlook: " + err.Error())
 	}

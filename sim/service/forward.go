@@ -59,9 +59,16 @@ type Gathered struct {
 func gather(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 	var ask struct {
 		Parts []*outlook.Part `json:"parts"`
+		Limit *float64        `json:"limit"` // counts passing another limit than the parts were made for
 	}
 	if err := json.Unmarshal(p.Body, &ask); err != nil {
 		return reply{}, fmt.Errorf("a part cannot be read: %w", err)
+	}
+	if ask.Limit != nil && len(ask.Parts) > 0 && ask.Parts[0] != nil {
+		if !(*ask.Limit >= 0 && *ask.Limit <= 1) {
+			return reply{}, fmt.Errorf("limit is %g; it must be from 0 to 1", *ask.Limit)
+		}
+		ask.Parts[0].Limit = *ask.Limit
 	}
 	o, err := outlook.Gather(ask.Parts)
 	if err != nil {

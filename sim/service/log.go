@@ -63,7 +63,7 @@ func read(e *Engine, p wire.Packet, step Step) (reply, error) {
 		if len(rows.Problems) > 0 {
 			reason = fmt.Sprintf("none of its %d rows can be used: %s in %s", rows.Read, rows.Problems[0].Reason, rows.Problems[0].First[0])
 		}
-		return reply{}, errors.New("nothing was read from the file; " + reason + ". Check separator and columns")
+		return reply{}, errors.New("nothing was read from the file; " + reason + ". Check separator and columns; dates are written like 2024-01-31, or take the order of rows as time")
 	}
 	e.rows, e.history, e.label = rows, evidence.NewHistory(rows), ask.Label
 	received := e.history.Received()

@@ -7,7 +7,7 @@ import { column } from "./engine/wire";
 import { CasebookList } from "./entries/list";
 import { briefCode, briefPicture, PrintedBrief } from "./sections/brief";
 import { watchEvidence } from "./sections/evidence";
-import { canRedo, canUndo, current, doc, edit, openBook, redo, say, tables, toast, undo } from "./state/document";
+import { canRedo, canUndo, current, doc, edit, openBook, redo, say, tables, toast, undo, warn } from "./state/document";
 import { connect } from "./state/edges";
 import { openLogDialog } from "./state/log";
 import { engines, grown, sentenceOf, solved, startEngines } from "./state/results";
@@ -45,7 +45,7 @@ function Header(): JSX.Element {
         <button type="button" class="icon" disabled={!canUndo.value} onClick={undo} aria-label="Undo" title="Undo (Ctrl+Z)">↶</button>
         <button type="button" class="icon" disabled={!canRedo.value} onClick={redo} aria-label="Redo" title="Redo (Ctrl+Shift+Z)">↷</button>
         <button type="button" class="desk" onClick={openLogDialog}>Read a log</button>
-        <button type="button" class="desk" onClick={() => (dialog.value = "share")}>Copy link</button>
+        <button type="button" class="desk" onClick={() => (dialog.value = "share")}>Share</button>
         <button type="button" class="wide" onClick={() => (dialog.value = "open")}>Open</button>
         <button type="button" class="wide" onClick={() => void saveFile()}>Save</button>
         <button type="button" class="wide" onClick={() => (dialog.value = "shelf")}>Casebooks</button>
@@ -56,7 +56,8 @@ function Header(): JSX.Element {
           <summary aria-label="More">⋯</summary>
           <div onClick={(e) => ((e.currentTarget.parentElement as HTMLDetailsElement).open = false)}>
             <button type="button" class="phone" onClick={openLogDialog}>Read a log</button>
-            <button type="button" class="phone" onClick={() => (dialog.value = "share")}>Copy link</button>
+            <button type="button" class="phone" onClick={() => (dialog.value = "share")}>Share</button>
+            <button type="button" class="phone" disabled={!canRedo.value} onClick={redo}>Redo</button>
             <button type="button" onClick={() => (dialog.value = "open")}>Open</button>
             <button type="button" onClick={() => void saveFile()}>Save</button>
             <button type="button" onClick={() => (dialog.value = "shelf")}>Casebooks</button>
@@ -89,7 +90,7 @@ function Page(p: { source: StageSource }): JSX.Element {
         <StageView source={p.source} />
       </main>
       <PhoneBar />
-      {toast.value && <div class="toast" role="status">{toast.value.text}{toast.value.undo && <button type="button" onClick={undo}>Undo</button>}</div>}
+      {toast.value && <div class="toast" role="status">{toast.value.text}{toast.value.undo && <button type="button" onClick={undo}>Undo</button>}{toast.value.stays && <button type="button" onClick={() => (toast.value = undefined)}>Dismiss</button>}</div>}
       {dialog.value === "log" && <LogDialog />}
       {dialog.value === "share" && <ShareDialog />}
       {dialog.value === "open" && <OpenDialog />}
@@ -111,7 +112,7 @@ async function openFirst(t: Tables): Promise<void> {
       if (id) say("Opened from the link. The casebook that was open before is kept under “Casebooks”.");
       return;
     }
-    say(`The link could not be opened. ${problem}`);
+    warn(`The link could not be opened. ${problem}`);
   }
   const id = last();
   const before = id ? stored(id) : undefined;
@@ -122,7 +123,7 @@ async function openFirst(t: Tables): Promise<void> {
       openBook(r.body.casebook, before.open, id);
       return;
     } catch (e) {
-      say(`The casebook kept in this browser cannot be opened: ${sentenceOf(e) ?? ""} It stays under “Casebooks”; the demo is shown.`);
+      warn(`The casebook kept in this browser cannot be opened: ${sentenceOf(e) ?? ""} It stays under “Casebooks”; the demo is shown.`);
     }
   }
   openBook(t.demo, t.demoOpen);
@@ -187,7 +188,7 @@ async function start(): Promise<void> {
   onAddress(() => {
     const code = codeInAddress();
     if (code === undefined) return;
-    void openCode(code).then((problem) => say(problem ? `The link could not be opened. ${problem}` : "Opened from the link. The casebook before is kept under “Casebooks”."));
+    void openCode(code).then((problem) => (problem ? warn : say)(problem ? `The link could not be opened. ${problem}` : "Opened from the link. The casebook before is kept under “Casebooks”."));
     clearAddress();
   });
   root.replaceChildren();

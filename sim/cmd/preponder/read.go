@@ -110,7 +110,10 @@ func describe(r service.ReadReport, body json.RawMessage) (json.RawMessage, erro
 	for _, m := range e.Top {
 		row := map[string]any{"id": m.ID, "links": m.Links, "arrived": m.Arrived}
 		if m.Fitness != nil {
-			row["fitness"], row["early"], row["good"] = m.Fitness, m.Origin.Early, m.Origin.Good
+			row["fitness"] = m.Fitness
+		}
+		if m.Origin != nil {
+			row["early"], row["good"] = m.Origin.Early, m.Origin.Good
 		}
 		top = append(top, row)
 	}

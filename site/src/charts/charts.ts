@@ -37,8 +37,8 @@ export function density(c: Curves, leader: { id: string; energy: number } | unde
     if (before && before.fill !== fill) bands.push({ ...p, fill: before.fill, band: before.band });
     bands.push({ ...p, fill, band: before ? before.band + (before.fill === fill ? 0 : 1) : 0 });
   });
-  const leaderTop = leader ? (law.find((p) => p.x >= leader.energy)?.y ?? 0) : 0;
   const low = law[0]?.x ?? 0, high = law.at(-1)?.x ?? 1;
+  const leaderSide = leader && leader.energy > (low + high) / 2 ? "end" : "start";
   return Plot.plot({
     width, height: 170, style, marginLeft: 8, marginRight: 10, marginBottom: 38, marginTop: 22,
     x: { label: null, ticks: 5, line: true, domain: [Math.min(0, low), high] }, y: { axis: null, domain: [0, top * 1.08] },
@@ -46,8 +46,8 @@ export function density(c: Curves, leader: { id: string; energy: number } | unde
       Plot.areaY(bands, { x: "x", y1: 0, y2: "y", z: "band", fill: "fill" }),
       held && Plot.line(points(held.eps, held.density), { x: "x", y: "y", stroke: quiet, strokeDasharray: "3 3" }),
       Plot.line(law, { x: "x", y: "y", stroke: ink, strokeWidth: 1.75, clip: true }),
-      leader && leader.energy <= high ? Plot.ruleX([leader], { x: "energy", y1: 0, y2: leaderTop + top * 0.06, stroke: ember, strokeWidth: 2.5 }) : null,
-      leader && leader.energy <= high ? Plot.text([leader], { x: "energy", y: leaderTop + top * 0.06, dy: -7, dx: -4, text: "id", fill: css("ember-text"), fontWeight: 600, textAnchor: "start" }) : null,
+      leader && leader.energy <= high ? Plot.ruleX([leader], { x: "energy", y1: 0, y2: top * 1.08, stroke: ember, strokeWidth: 2 }) : null,
+      leader && leader.energy <= high ? Plot.text([leader], { x: "energy", y: top * 1.08, dy: -9, text: "id", fill: css("ember-text"), fontWeight: 600, textAnchor: leaderSide }) : null,
       Plot.text(["fittest"], { frameAnchor: "bottom-left", dy: 36, textAnchor: "start", fill: quiet }),
       Plot.text(["energy ε"], { frameAnchor: "bottom", dy: 36, fill: quiet }),
       Plot.text(["least fit"], { frameAnchor: "bottom-right", dy: 36, textAnchor: "end", fill: quiet }),
@@ -136,8 +136,8 @@ export function shares(g: Grown, width: number): Element {
   const rows = g.path.followed.flatMap((f, i) => f.map((y, k) => ({ x: g.path.members[k]!, y, id: g.ranking[i]?.id ?? "", i })));
   const leader = g.path.members.map((x, k) => ({ x, y: g.path.share[k]! }));
   const end = g.path.members.at(-1) ?? 1;
-  const top = Math.min(1, Math.max(0.02, ...leader.filter((p) => p.x > 20).map((p) => p.y)) * 1.12);
-  const colour = (i: number): string => (i === 0 ? ember : css(`r${Math.min(8, 1 + 2 * i)}`));
+  const top = Math.min(1, Math.max(0.02, ...leader.filter((p) => p.x >= 10 || leader.length < 20).map((p) => p.y)) * 1.08);
+  const colour = (i: number): string => (i === 0 ? ember : css(`r${[0, 1, 3, 5, 6][i] ?? 6}`));
   let below = -Infinity; // labels keep a line apart, from the lowest up
   const labels = rows.filter((r) => r.x === end).sort((a, b) => a.y - b.y).map((r) => ({ ...r, at: (below = Math.max(r.y, below + top * 0.085)) }));
   return Plot.plot({
@@ -158,7 +158,7 @@ export function shares(g: Grown, width: number): Element {
 export function track(t: { members: number[]; share: number[]; top4: number[] }, width: number): Element {
   const leader = t.members.map((x, i) => ({ x, y: t.share[i]! }));
   const four = t.members.map((x, i) => ({ x, y: t.top4[i]! }));
-  const top = Math.min(1, Math.max(...four.slice(Math.floor(four.length / 4)).map((p) => p.y)) * 1.2);
+  const top = Math.min(1, Math.max(...four.map((p) => p.y)) * 1.06);
   const end = leader.at(-1);
   const last = four.at(-1);
   return Plot.plot({

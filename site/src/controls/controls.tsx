@@ -54,7 +54,8 @@ export function Slider(p: SliderProps): JSX.Element {
   };
   const enter = (raw: string): void => {
     setText(raw);
-    const v = Number(raw.replace(/,/g, ""));
+    const percent = p.high === 1 && /%\s*$/.test(raw);
+    const v = Number(raw.replace(/,/g, "").replace(percent ? /%\s*$/ : /$^/, "")) / (percent ? 100 : 1);
     if (raw.trim() === "" || !Number.isFinite(v)) setFault(`“${raw}” is not a number; ${typed(p.value, p.step)} is kept.`);
     else if (v < p.low || v > p.high || (p.open && v === p.low)) setFault(`It must be ${p.open ? "above" : "at least"} ${p.low.toLocaleString("en")} and at most ${p.high.toLocaleString("en")}; ${typed(p.value, p.step)} is kept.`);
     else if (p.whole && !Number.isInteger(v)) setFault(`It must be a whole number; ${typed(p.value, p.step)} is kept.`);

@@ -35,7 +35,7 @@ export function ShareDialog(): JSX.Element {
     if (!d) return;
     engines.main.ask<{ code: string; holds: string }>("encode", { casebook: d.book, names }).then((r) => { setMade(r.body); setProblem(undefined); }, (e: unknown) => setProblem(sentenceOf(e)));
   }, [d, names]);
-  const link = made ? addressWith(made.code) : "";
+  const link = made ? addressWith(made.code, d?.keys.indexOf(d.open) ?? 0) : "";
   const done = async (what: string, text: string): Promise<void> => say((await copy(text, field.current)) ? `${what} copied.` : "The browser did not let it be copied; select it and copy it by hand.");
   return (
     <Modal title="Link and code" wide onClose={close}>
@@ -70,7 +70,7 @@ export async function saveFile(names = true): Promise<void> {
 export async function openCode(code: string): Promise<string | undefined> {
   try {
     const r = await engines.main.ask<{ casebook: Casebook }>("decode", { code });
-    openBook(r.body.casebook);
+    openBook(r.body.casebook, Number(/&entry=(\d+)/.exec(code)?.[1] ?? 1) - 1);
     return undefined;
   } catch (e) {
     return sentenceOf(e);

@@ -5,7 +5,7 @@ import { fan, shares, track } from "../charts/charts";
 import { useLayoutEffect, useRef } from "preact/hooks";
 import { current, doc, tables } from "../state/document";
 import { grown, solved } from "../state/results";
-import { addressWith } from "../state/storage";
+import { addressWith, fromFile } from "../state/storage";
 import type { Entry } from "../state/types";
 import { count, number, percent, range } from "../words/format";
 import { evidenceWords, Origin } from "./evidence";
@@ -15,6 +15,9 @@ export const preparedFor = signal("");
 /** The picture for paper, as a data address, and the code of the casebook. */
 export const briefPicture = signal<string | undefined>(undefined);
 export const briefCode = signal<string | undefined>(undefined);
+
+/** A longer code is not printed. */
+const longest = 3200;
 
 export function Brief(): JSX.Element {
   return (
@@ -62,7 +65,7 @@ export function PrintedBrief(): JSX.Element | null {
   return (
     <section class="paper" aria-label="Brief for print">
       <header>
-        <p>{d.book.title}{preparedFor.value ? ` — prepared for ${preparedFor.value}` : ""}</p>
+        <p>{d.book.title}, {new Date().toISOString().slice(0, 10)}{preparedFor.value ? ` — prepared for ${preparedFor.value}` : ""}</p>
         <h1>{e.title || "Untitled entry"}</h1>
         {e.note && <p>{e.note}</p>}
       </header>
@@ -77,7 +80,7 @@ export function PrintedBrief(): JSX.Element | null {
               <tr><th scope="row">Top four; HHI</th><td>{percent(g.top4)}; {number(g.hhi)}</td></tr>
               <tr><th scope="row">Lead changes so far</th><td>{g.leadChanges}</td></tr>
               <tr><th scope="row">Margin (condensate below 1)</th><td>{number(s.margin)}</td></tr>
-              <tr><th scope="row">Condensate, endless growth</th><td>{percent(s.condensate)} of links, on the fittest few together</td></tr>
+              <tr><th scope="row">Condensate, endless growth</th><td>{s.condensate > 0 ? `${percent(s.condensate)} of links, on the fittest few together` : "none"}</td></tr>
               {s.dissolve.headStart !== null && <tr><th scope="row">Dissolved by, alone</th><td>head start {number(s.dissolve.headStart)} or open share {percent(s.dissolve.openShare ?? 0)}</td></tr>}
             </tbody>
           </table>
@@ -103,7 +106,10 @@ export function PrintedBrief(): JSX.Element | null {
         <ul>{assumptions(e).map((a) => <li key={a}>{a}</li>)}</ul>
       </div>
       <p class="caution"><strong>Caution.</strong> {tables.value?.caution}</p>
-      {briefCode.value && <p class="code">Opens again by this link, or by what follows its #c= pasted under “Open”: <code>{addressWith(briefCode.value)}</code></p>}
+      {briefCode.value && briefCode.value.length > longest && <p class="code">The code of this casebook has {count(briefCode.value.length)} characters, too many for paper: hand it round with the link or the case file.</p>}
+      {briefCode.value && briefCode.value.length <= longest && (
+        <p class="code">Opens again by this {fromFile() ? "code, pasted under “Open”" : "link, or by what follows its #c= pasted under “Open”"}: <code>{fromFile() ? briefCode.value : addressWith(briefCode.value, d.keys.indexOf(d.open))}</code></p>
+      )}
     </section>
   );
 }

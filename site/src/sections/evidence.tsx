@@ -56,7 +56,7 @@ export function EvidenceBlock(): JSX.Element | null {
           <div><dt>Top four together (CR4)</dt><dd>{percent(e.top4)}</dd></div>
           <div><dt>HHI</dt><dd>{number(e.hhi)} <small>points of 10,000</small></dd></div>
           <div><dt>Gini</dt><dd>{number(e.gini)}</dd></div>
-          {e.margin.low !== null && <div><dt>Margin</dt><dd>{number(e.margin.estimate, "none")} <small>95 %: {range(e.margin)}</small></dd></div>}
+          {e.margin.low !== null && <div><dt>Margin</dt><dd>{number(e.margin.estimate)} <small>95 %: {range(e.margin)}</small></dd></div>}
         </dl>
         {leader && <Origin m={leader} />}
         <Figure

@@ -1,10 +1,12 @@
 // The sections of the unfolded entry.
+import { signal } from "@preact/signals";
 import type { ComponentChildren, JSX } from "preact";
+import { useEffect } from "preact/hooks";
 import { density, exponent, fan, gauge, occupation, potential, shares } from "../charts/charts";
 import { Figure } from "../charts/figure";
 import { Check, Progress, Slider } from "../controls/controls";
-import { beginDrag, current, doc, editEntry, endDrag, tables } from "../state/document";
-import { cancelGrowth, cancelOutlook, growAnyway, openKey, outlookKey, runOutlook } from "../state/edges";
+import { beginDrag, doc, editEntry, endDrag, tables } from "../state/document";
+import { cancelGrowth, cancelOutlook, growAnyway, outlookKey, runOutlook } from "../state/edges";
 import { fault, grown, growing, held, outlookFault, outlooks, running, solved, waitingToGrow } from "../state/results";
 import { projection } from "../state/document";
 import type { Entry, Outlook, Solved } from "../state/types";
@@ -65,7 +67,7 @@ export function LawSection(p: { entry: Entry }): JSX.Element | null {
         onChange={(v) => editEntry((e) => ({ ...e, sharpness: v }))}
       />
       <Slider
-        label="Links a newcomer m" value={p.entry.growth.links} low={1} high={t.limits.links} slide={[1, 12]} step={1} help="agreements each newcomer makes" onBegin={begin} onEnd={end}
+        label="Links a newcomer m" value={p.entry.growth.links} low={1} high={t.limits.links} slide={[1, 12]} step={1} help="made by each newcomer, on average" onBegin={begin} onEnd={end}
         onChange={(v) => setGrowth({ links: v })}
       />
       <Slider
@@ -108,7 +110,7 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
           table={() => ({ columns: ["energy", "f"], rows: (s.curves?.eps ?? []).map((e, i) => [e, s.curves?.exponent?.[i] ?? ""]) })}
         />
         <Figure
-          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network with one standard error.`} of={[s, g, h]} draw={(w) => occupation(s, g, h, w)}
+          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network at its full size, with one standard error.`} of={[s, g, h]} draw={(w) => occupation(s, g, h, w)}
           table={() => ({ columns: ["energy", "counted n", "standard error", "members"], rows: (g?.counted ?? []).map((c) => [c.eps, c.n, c.error, c.members]) })}
         />
         <Figure
@@ -116,7 +118,7 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
           table={() => ({ columns: ["sharpness", "beta mu"], rows: (s.curves?.beta ?? []).map((b, i) => [b, s.curves?.betaMuOver?.[i] ?? ""]) })}
         />
       </div>
-      <p class="caption">Circles: links counted at each level of the network on show. In a condensate they lie above the curve while the ground level is still filling.</p>
+      <p class="caption">Circles: links counted at each level of this network at its full size. In a condensate they lie above the curve while the ground level is still filling.</p>
     </Section>
   );
 }
@@ -149,6 +151,8 @@ export function SharesSection(): JSX.Element {
   );
 }
 
+const lastOutlook = signal<{ entry: number; outlook: Outlook } | undefined>(undefined);
+
 /** The outlook that belongs to the open entry, and whether its settings were changed since. */
 export function outlookOf(e: Entry): { outlook: Outlook | undefined; key: string } {
   const d = doc.value;
@@ -161,18 +165,20 @@ export function OutlookSection(p: { entry: Entry }): JSX.Element {
   const { outlook: o, key } = outlookOf(p.entry);
   const run = running.value;
   const mine = run?.key === key;
+  useEffect(() => { if (o && doc.value) lastOutlook.value = { entry: doc.value.open, outlook: o }; }, [o]);
   const left = run && run.done > 0 ? ((performance.now() - run.since) / 1000 / run.done) * (run.of - run.done) : undefined;
   const set = (x: Partial<Entry["outlook"]>): void => editEntry((e) => ({ ...e, outlook: { ...e.outlook, ...x } }));
   return (
     <Section id="outlook" title="Outlook" aside={o ? `leader's share, ${o.runs} runs` : "not run yet for these settings"}>
       <Slider label="Planned size" value={p.entry.outlook.horizon} low={2} high={t?.limits.members ?? 1e7} slide={[1000, 1_000_000]} step={1} log whole unit="members" help="how far to grow on from today" onBegin={begin} onEnd={end} onChange={(v) => set({ horizon: v })} />
-      <Slider label="Limit" value={p.entry.outlook.limit} low={0} high={1} slide={[0, 1]} step={0.01} unit="share of all links" help="your own limit for one member" onBegin={begin} onEnd={end} onChange={(v) => set({ limit: v })} />
+      <Slider label="Limit" value={p.entry.outlook.limit} low={0} high={1} slide={[0, 1]} step={0.01} unit="share of all links, 20 % or 0.2" help="your own limit for one member" onBegin={begin} onEnd={end} onChange={(v) => set({ limit: v })} />
       <Slider label="Runs" value={p.entry.outlook.runs} low={1} high={t?.limits.runs ?? 10000} slide={[20, 1000]} step={10} whole help="more runs, surer figures" onBegin={begin} onEnd={end} onChange={(v) => set({ runs: v })} />
       {run ? (
         <Progress what={`${run.done} of ${run.of} runs made${mine ? "" : " for another entry"}`} done={run.done / run.of} left={left === undefined ? undefined : seconds(left)} onCancel={cancelOutlook} />
       ) : (
         <p class="buttons"><button type="button" onClick={() => void runOutlook()}>{o ? "Run again" : "Run the outlook"}</button></p>
       )}
+      {!o && !run && lastOutlook.value && lastOutlook.value.entry === doc.value?.open && <p class="caption">The settings changed since the last outlook, which said: {lastOutlook.value.outlook.sentences[0]} Run it again for these.</p>}
       {outlookFault.value && <p class="fault" role="alert">{outlookFault.value}</p>}
       {o && (
         <>
@@ -214,5 +220,3 @@ export function LeversSection(p: { entry: Entry }): JSX.Element | null {
     </Section>
   );
 }
-
-export { current, openKey };

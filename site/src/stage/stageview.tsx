@@ -89,7 +89,7 @@ function Overlay(): JSX.Element {
   };
   const zoomBy = (f: number): void => {
     const z = zoom.peek();
-    const next = Math.max(1, Math.min(64, z.zoom * f));
+    const next = Math.max(1, Math.min(24, z.zoom * f));
     zoom.value = next === 1 ? { zoom: 1, x: 0, y: 0 } : { ...z, zoom: next };
   };
   const walk = (by: number): void => {
@@ -189,7 +189,7 @@ function Labels(): JSX.Element | null {
   const texts = [...marks].reverse().filter((m) => { const ok = m.name !== "" && least - m.r > (projector.value ? 62 : 34); if (ok || m.name === "all") least = m.r; return ok || m.name === "all"; });
   return (
     <div class="labels" aria-hidden="true">
-      {leader && label && <div class="plate" style={{ left: `${label.x}px`, top: `${label.y}px` }}><b>{nameOf(leader.member)}</b> {percent(leader.share)} of links</div>}
+      {leader && label && label.x > 0 && label.y > 0 && (zoom.value.zoom === 1 || Math.hypot(leader.x - label.x, leader.y - label.y) < 260 + leader.r) && <div class="plate" style={{ left: `${label.x}px`, top: `${label.y}px` }}><b>{nameOf(leader.member)}</b> {percent(leader.share)} of links</div>}
       {!zoomed && (
         <div class="ruler" style={{ left: `${s.cx}px`, top: `${s.cy + s.r + 12}px`, width: `${s.r}px` }}>
           <i>{arrival.value ? "first to arrive" : "fittest"}</i>
@@ -227,7 +227,7 @@ function Readout(): JSX.Element | null {
   const reigns = g.reigns.filter((r) => r.from <= s.members);
   const last = reigns.at(-1);
   return (
-    <dl class="readout" aria-live="off">
+    <dl class="readout" aria-live="off" data-over={zoom.value.zoom > 1 ? "" : undefined}>
       {capped ? <div class="lead"><dt>At the ceiling</dt><dd>{s.capped.slice(0, 3).map(nameOf).join(", ")} {s.capped.length === 1 && s.leader ? percent(s.leader.share) : ""}</dd></div>
         : s.leader && <div class="lead"><dt>Leader</dt><dd>{nameOf(s.leader.member)} {percent(s.leader.share)}</dd></div>}
       {s.next && <div><dt>Runner-up</dt><dd>{nameOf(s.next.member)} {percent(s.next.share)}</dd></div>}

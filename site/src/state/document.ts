@@ -23,6 +23,7 @@ export const canRedo = computed(() => future.value.length > 0);
 export interface Toast {
   text: string;
   undo?: boolean;
+  stays?: boolean;
 }
 export const toast = signal<Toast | undefined>(undefined);
 let toastTimer = 0;
@@ -30,6 +31,12 @@ export function say(text: string, canBeUndone = false): void {
   toast.value = { text, undo: canBeUndone };
   clearTimeout(toastTimer);
   toastTimer = window.setTimeout(() => (toast.value = undefined), 8000);
+}
+
+/** Says what must not be missed: it stays until it is dismissed. */
+export function warn(text: string): void {
+  clearTimeout(toastTimer);
+  toast.value = { text, stays: true };
 }
 
 /** The unfolded entry and its place. */

@@ -5,7 +5,7 @@ import { column } from "../engine/wire";
 import { current, doc, isDragging, projection, say, tables } from "./document";
 import { engines, digests, fault, grown, growing, outlookFault, outlooks, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
 import { keep, kept } from "./storage";
-import type { Casebook, Grown, Outlook, Solved } from "./types";
+import type { Casebook, Entry, Grown, Outlook, Solved } from "./types";
 import { follow, said, shown, theme } from "./view";
 import { percent, count } from "../words/format";
 
@@ -18,12 +18,6 @@ export const network = signal<Uint8Array<ArrayBuffer> | undefined>(undefined);
 /** The question the open entry asks, as text: equal text, equal answer. */
 export function keyOf(book: Casebook): string {
   return JSON.stringify(book.entries[0]) + (book.evidence ? `|${book.evidence.rows}|${book.evidence.label}` : "");
-}
-
-export function openKey(): string | undefined {
-  const c = current.value;
-  const d = doc.value;
-  return c && d ? keyOf(projection(d.book, c.entry)) : undefined;
 }
 
 function report(e: unknown): void {
@@ -137,8 +131,26 @@ async function digestOf(book: Casebook, t: string): Promise<Digest> {
 /** Outlook: chunks of runs over the pool, gathered as they come. */
 let outlookStop: AbortController | undefined;
 
-export function outlookKey(book: Casebook, e: { outlook: { horizon: number; limit: number; runs: number } }): string {
-  return `${keyOf(book)}|${e.outlook.horizon}|${e.outlook.limit}|${e.outlook.runs}`;
+/** What decides the runs of an outlook: the limit only counts them. */
+export const runsKey = (book: Casebook, e: Entry): string => `${keyOf(book)}|${e.outlook.horizon}`;
+export const outlookKey = (book: Casebook, e: Entry): string => `${runsKey(book, e)}|${e.outlook.limit}`;
+
+/** Parts of outlooks made so far, by what decides them. */
+const made = new Map<string, unknown[]>();
+
+async function gather(runs: string, limit: number): Promise<void> {
+  const r = await engines.main.ask<Outlook>("gather", { parts: made.get(runs) ?? [], limit });
+  outlooks.value = new Map([...outlooks.peek(), [`${runs}|${limit}`, r.body] as const].slice(-200));
+}
+
+/** Another limit counts the same runs anew. */
+function recount(): void {
+  const d = doc.value;
+  const c = current.value;
+  if (!d || !c) return;
+  const book = projection(d.book, c.entry);
+  const runs = runsKey(book, c.entry);
+  if (made.has(runs) && !outlooks.peek().has(outlookKey(book, c.entry))) void gather(runs, c.entry.outlook.limit).catch(report);
 }
 
 export async function runOutlook(): Promise<void> {
@@ -154,13 +166,10 @@ export async function runOutlook(): Promise<void> {
     running.value = { key, done: 0, of, since: performance.now() };
     outlookFault.value = undefined;
   });
+  const runs = runsKey(base, c.entry);
   const parts: unknown[] = [];
   let next = 0;
   let inParts = 0;
-  const gather = async (): Promise<void> => {
-    const r = await engines.main.ask<Outlook>("gather", { parts });
-    outlooks.value = new Map([...outlooks.peek(), [key, r.body] as const].slice(-100));
-  };
   const work = async (engine: (typeof engines.pool)[number]): Promise<void> => {
     while (next < of && !stop.signal.aborted) {
       const from = next;
@@ -171,7 +180,9 @@ export async function runOutlook(): Promise<void> {
       inParts += to - from;
       const now = running.peek();
       if (now) running.value = { ...now, done: inParts };
-      await gather();
+      made.set(runs, parts);
+      const shownNow = current.peek()?.index === c.index ? current.peek()?.entry : undefined;
+      await gather(runs, (shownNow ?? c.entry).outlook.limit);
     }
   };
   const results = await Promise.allSettled(engines.pool.map(work));
@@ -190,6 +201,7 @@ export function cancelOutlook(): void {
 /** Starts all effects. */
 export function connect(): void {
   effect(() => ask(false));
+  effect(recount);
   let markTimer = 0;
   effect(() => {
     void doc.value;

@@ -74,9 +74,13 @@ export function codeInAddress(): string | undefined {
   return at === 0 ? location.hash.slice(3) : undefined;
 }
 
-export function addressWith(code: string): string {
-  return `${location.href.split("#")[0]}#c=${code}`;
+/** The address that opens a code on one of its entries. */
+export function addressWith(code: string, entry: number): string {
+  return `${location.href.split("#")[0]}#c=${code}${entry > 0 ? `&entry=${entry + 1}` : ""}`;
 }
+
+/** Whether this page was opened from a file, whose path means nothing elsewhere. */
+export const fromFile = (): boolean => location.protocol === "file:";
 
 /** Takes the code out of the address, so that a reload opens what was made since. */
 export function clearAddress(): void {

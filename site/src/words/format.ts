@@ -29,11 +29,11 @@ export function number(x: number | null | undefined, absent = "∞"): string {
 export function typed(x: number, step: number): string {
   const digits = Math.max(0, Math.min(6, Math.ceil(-Math.log10(step) - 1e-9)));
   const short = Number(x.toFixed(digits));
-  return String(Math.abs(short - x) < 1e-12 * Math.max(1, Math.abs(x)) ? short : x);
+  return String(Math.abs(short - x) < 1e-12 * Math.max(1, Math.abs(x)) ? short : Number(x.toPrecision(7)));
 }
 
 export function seconds(s: number): string {
-  if (s < 1) return "under a second";
+  if (s < 1) return "1 s";
   if (s < 90) return `${Math.round(s)} s`;
   return `${Math.round(s / 60)} min`;
 }

@@ -11,7 +11,7 @@ after(closeBrowser);
 
 /** The code of the demo, from the page itself. */
 async function codeOf(page: Parameters<Parameters<typeof pageTest>[2]>[0]["page"]): Promise<string> {
-  await page.getByRole("button", { name: "Copy link" }).first().click();
+  await page.getByRole("button", { name: "Share", exact: true }).first().click();
   await page.waitForFunction(() => (document.querySelector<HTMLTextAreaElement>("#share-code")?.value.length ?? 0) > 50);
   const code = await page.locator("#share-code").inputValue();
   await page.keyboard.press("Escape");
@@ -204,7 +204,7 @@ pageTest("by keyboard alone: drag, read the sample log, look forward, get the li
   await reach(/BUTTON .*Read the log/);
   await page.keyboard.press("Enter");
   await says(page, "#evidence-verdict", /Heading for a condensate/);
-  await reach(/BUTTON .*Copy link/);
+  await reach(/BUTTON .*Share/);
   await page.keyboard.press("Enter");
   await reach(/BUTTON .*Copy link/);
   await page.keyboard.press("Enter");
