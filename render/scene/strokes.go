@@ -28,6 +28,7 @@ func (l *layout) strokes(p *Picture) {
 	width *= l.v.Scale
 	whole := 0.17 * (1 - smooth((math.Log(float64(l.links))-math.Log(1200))/(math.Log(9000)-math.Log(1200))))
 	stars := l.stars()
+	l.held(stars, drawn)
 	for v := l.first(); v < l.n; v++ {
 		first, end := int(l.c.Before[v]), int(l.c.Before[v+1])
 		if v+1 > l.n {
@@ -52,6 +53,26 @@ func (l *layout) first() int {
 		return l.c.From
 	}
 	return 0
+}
+
+// held gives the stars of a network read from a log their spokes: as many links as each held there, spread evenly, since
+// who gave them is not known.
+func (l *layout) held(stars map[int32]*star, drawn float64) {
+	if l.c.From <= 1 {
+		return
+	}
+	log := map[int32]float64{}
+	for _, j := range l.c.Targets[:min(int(l.c.Before[min(l.c.From, l.n)]), l.links)] {
+		if stars[j] != nil {
+			log[j]++
+		}
+	}
+	for j, s := range stars {
+		reach := l.r * min(1, 0.07+1.55*math.Sqrt(l.share(j)))
+		for i := range s.rays {
+			s.rays[i] = ray{count: log[j] / float64(l.links) * drawn / float64(len(s.rays)), reach: l.radius(j) + 0.35*reach*(0.7+0.6*hash(uint64(j)<<8+uint64(i)+3))}
+		}
+	}
 }
 
 func smooth(t float64) float64 {

@@ -106,6 +106,10 @@ func Condense(l *Rows, s *Study, label string) *Condensed {
 			c.Draws = append(c.Draws, d)
 		}
 	}
+	if c.Law != nil && (c.PerArrival < 1 || c.PerArrival > growth.MaxLinks) {
+		s.Reasons = append(s.Reasons, fmt.Sprintf("Newcomers bring %.2g links each on average; networks are grown forward with 1 to %d, so no outlook is given.", c.PerArrival, growth.MaxLinks))
+		c.Law, c.Draws = nil, []Law{}
+	}
 	c.Check = s.check(c.Notes)
 	c.keepMembers(s, received)
 	path := share.Along(h.Target, h.Before, min(10, h.Members()), h.Members(), pathPoints, nil)

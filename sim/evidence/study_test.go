@@ -3,6 +3,7 @@ package evidence
 import (
 	"math"
 	"math/rand/v2"
+	"strings"
 	"testing"
 
 	"preponder/sim/internal/near"
@@ -100,6 +101,17 @@ func TestOriginsMultiplyToLinks(t *testing.T) {
 	start := c.Start(c.Law.Make(), 1, 3)
 	if len(start.Energy) != c.Members {
 		t.Errorf("%d members start, %d stand", len(start.Energy), c.Members)
+	}
+}
+
+func TestNoOutlookOutsideWhatGrows(t *testing.T) {
+	s, h := examine(t, world{n: 300, m: 70, fitness: betaFitness(3), alpha: 1, seed: 4})
+	c := Condense(h.rows(), s, "test")
+	if err := c.Verify(); err != nil || c.Law != nil {
+		t.Errorf("70 links a newcomer: %v, %v", err, c.Law)
+	}
+	if s.Verdict != None && !strings.Contains(strings.Join(c.Check.Reasons, " "), "Newcomers bring 7") {
+		t.Errorf("reasons %v", c.Check.Reasons)
 	}
 }
 

@@ -9,7 +9,7 @@ import { briefCode, briefPicture, PrintedBrief } from "./sections/brief";
 import { watchEvidence } from "./sections/evidence";
 import { canRedo, canUndo, current, doc, edit, openBook, redo, say, tables, toast, undo, warn } from "./state/document";
 import { connect } from "./state/edges";
-import { openLogDialog } from "./state/log";
+import { openLogDialog, take } from "./state/log";
 import { engines, grown, sentenceOf, solved, startEngines } from "./state/results";
 import { clearAddress, codeInAddress, kept, last, onAddress, stored } from "./state/storage";
 import type { Casebook, Tables } from "./state/types";
@@ -163,7 +163,13 @@ function keys(): void {
   });
   // A log dropped anywhere is taken as one dropped in the dialog.
   window.addEventListener("dragover", (e) => e.preventDefault());
-  window.addEventListener("drop", (e) => { e.preventDefault(); openLogDialog(); });
+  window.addEventListener("drop", (e) => {
+    if (e.defaultPrevented) return;
+    e.preventDefault();
+    openLogDialog();
+    const f = e.dataTransfer?.files[0];
+    if (f) void f.arrayBuffer().then((b) => take(f.name, new Uint8Array(b)));
+  });
 }
 
 async function start(): Promise<void> {

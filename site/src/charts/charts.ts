@@ -15,8 +15,8 @@ function tone(pull: number): string {
 }
 
 interface Point { x: number; y: number }
-/** Powers of ten in a range. */
-const decades = (low: number, high: number): number[] => Array.from({ length: 9 }, (_, i) => 10 ** i).filter((d) => d >= low && d <= high);
+/** Powers of ten in a range, every other one where they would touch. */
+const decades = (low: number, high: number): number[] => Array.from({ length: 9 }, (_, i) => 10 ** i).filter((d) => d >= low && d <= high && (high < 1e6 || Math.log10(d) % 2 === Math.floor(Math.log10(high)) % 2));
 const points = (x: number[], y: (number | null)[]): Point[] => x.flatMap((v, i) => { const w = y[i]; return finite(w) ? [{ x: v, y: w }] : []; });
 
 /** p(eps), its area in the colours of the disc; the leader's place. */

@@ -209,7 +209,7 @@ function Legend(): JSX.Element | null {
     <>
       <div class="legend sizes" aria-hidden="true">
         <div>{[0.25, 0.05, 0.01].map((x) => <span key={x}><small>{percent(x)}</small><i style={{ width: `${2 * size(x)}px`, height: `${2 * size(x)}px` }} /></span>)}</div>
-        <p>{(grown.value?.value.from ?? 1) >= s.members ? "links of the log are counted, not drawn" : `one stroke for ${s.oneStrokeFor < 1.5 ? "each link" : `${count(s.oneStrokeFor)} links`}`}</p>
+        <p>{(grown.value?.value.from ?? 1) >= s.members ? "spokes: links held in the log; who gave them is not kept" : `one stroke for ${s.oneStrokeFor < 1.5 ? "each link" : `${count(s.oneStrokeFor)} links`}`}</p>
       </div>
       <div class="legend pull" aria-hidden="true">
         <p>pull on newcomers</p>
@@ -286,13 +286,14 @@ function Transport(): JSX.Element | null {
   const decades: number[] = [];
   for (let d = 10; d <= high; d *= 10) if (d >= low) decades.push(d);
   const at = Math.min(high, Math.max(low, Math.round(shown.value)));
+  const whole = !g || g.members <= g.from; // a network as the log left it: nothing has grown yet
   const lever = current.value?.entry.growth.leversFrom ?? 0;
   return (
     <div class="transport">
       <div class="buttons">
-        <button type="button" class="icon" aria-label="To the beginning" onClick={() => { playing.value = false; shown.value = low; }}><Icon d={shapes.start} /></button>
-        <button type="button" class="primary" onClick={play} aria-pressed={playing.value}><Icon d={playing.value ? shapes.pause : shapes.play} /> {playing.value ? "Pause" : "Play"}</button>
-        <button type="button" class="icon" aria-label="To the end" onClick={() => { playing.value = false; shown.value = high; }}><Icon d={shapes.end} /></button>
+        <button type="button" class="icon" aria-label="To the beginning" disabled={whole} onClick={() => { playing.value = false; shown.value = low; }}><Icon d={shapes.start} /></button>
+        <button type="button" class="primary" disabled={whole} onClick={play} aria-pressed={playing.value}><Icon d={playing.value ? shapes.pause : shapes.play} /> {playing.value ? "Pause" : "Play"}</button>
+        <button type="button" class="icon" aria-label="To the end" disabled={whole} onClick={() => { playing.value = false; shown.value = high; }}><Icon d={shapes.end} /></button>
       </div>
       <div class="scrubber">
         <div class="reigns" aria-hidden="true">
@@ -301,7 +302,7 @@ function Transport(): JSX.Element | null {
           ))}
           {lever > low && lever < high && <b class="flag" style={{ left: `${to(lever) / 10}%` }} title={`Levers from ${count(lever)} members`} />}
         </div>
-        <input type="range" min={0} max={notches} value={to(at)} aria-label="Members on show" aria-valuetext={`${count(at)} members`}
+        <input type="range" min={0} max={notches} value={whole ? notches : to(at)} disabled={whole} aria-label="Members on show" aria-valuetext={`${count(at)} members`}
           onInput={(e) => { playing.value = false; shown.value = from(Number(e.currentTarget.value)); }}
           onPointerDown={() => (quick.value = true)} onPointerUp={() => (quick.value = false)} />
         <div class="decades" aria-hidden="true">{decades.map((d) => <span key={d} style={{ left: `${to(d) / 10}%` }}>{count(d)}</span>)}</div>

@@ -256,3 +256,31 @@ pageTest("a browser that denies storage is told so, and the rest goes on", {}, a
   await page.getByRole("button", { name: "Duplicate If workshops compare harder" }).click();
   await says(page, ".casebook > header", /5 entries/);
 });
+
+pageTest("an engine that stops is said, started again, and loses nothing", {}, async ({ page }) => {
+  await page.addInitScript(() => {
+    const all: Worker[] = [];
+    (window as unknown as { workers: Worker[] }).workers = all;
+    window.Worker = class extends Worker {
+      constructor(url: string | URL) { super(url); all.push(this); }
+    };
+  });
+  await page.reload();
+  await drawn(page);
+  await page.getByRole("textbox", { name: "Members", exact: true }).fill("400000");
+  await page.evaluate(() => { for (const w of (window as unknown as { workers: Worker[] }).workers) w.dispatchEvent(new MessageEvent("message", { data: "ended" })); });
+  await says(page, "#standing .fault", /The engine stopped\. It has been started again; nothing of the casebook is lost\./);
+  await page.getByRole("textbox", { name: "Members", exact: true }).fill("3000");
+  await says(page, ".readout", /Members3,000/);
+  assert.match(await text(page, "#standing .verdict"), /68 %/);
+});
+
+pageTest("a file dropped anywhere is read", {}, async ({ page }) => {
+  await drawn(page);
+  await page.evaluate(() => {
+    const data = new DataTransfer();
+    data.items.add(new File(["time,source,target\n1,b,a\n2,c,a\n"], "dropped.csv", { type: "text/csv" }));
+    document.querySelector(".casebook")!.dispatchEvent(new DragEvent("drop", { bubbles: true, cancelable: true, dataTransfer: data }));
+  });
+  await says(page, "dialog", /dropped\.csv: columns recognised by their names/);
+});
