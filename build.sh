@@ -6,13 +6,6 @@ export CGO_ENABLED=0
 
 say() { printf '%s\n' "$*" >&2; }
 
-need() { # need COMMAND PACKAGE...
-  command -v "$1" >/dev/null && return
-  shift
-  say "installing $*"
-  apt-get update -qq && DEBIAN_FRONTEND=noninteractive apt-get install -y -qq --no-install-recommends "$@" >/dev/null
-}
-
 modules() {
   if [ ! -d site/node_modules ] || [ site/package-lock.json -nt site/node_modules ]; then
     (cd site && npm ci --no-fund --no-audit --loglevel=error && touch node_modules) >&2

@@ -148,13 +148,12 @@ func (j *judge) lognormal() fit {
 // profile returns the best likelihood of a family among laws with the given ground integral; +Inf: any q <= 1.
 func (j *judge) profile(s shape, ground float64, start *[3]float64) float64 {
 	if math.IsInf(ground, 1) {
-		x, l := maximise(func(x []float64) float64 {
+		_, l := maximise(func(x []float64) float64 {
 			if x[1] > 0 || !inside(math.Exp(x[0]), math.Exp(x[1]), x[2]) {
 				return math.Inf(-1)
 			}
 			return j.value(s.make(math.Exp(x[0]), math.Exp(x[1]), x[2]))
 		}, []float64{start[0], math.Min(start[1], -0.02), start[2]}, -0.15, 110)
-		_ = x
 		return l
 	}
 	x, l := maximise(func(x []float64) float64 {

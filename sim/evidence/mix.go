@@ -94,7 +94,7 @@ func newGrid(list []cell, free bool) *grid {
 	return g
 }
 
-// A spectrumLaw gives the mass of ln eta in an interval.
+// A massLaw gives the mass of ln eta in an interval.
 type massLaw func(low, high float64) float64
 
 // weigh returns the masses of the law at the nodes of each cell; shared nodes share the slice.

@@ -3,8 +3,6 @@ package evidence
 import (
 	"fmt"
 	"math"
-
-	"preponder/sim/share"
 )
 
 // MinMembers and MinChoices are the least a log must hold before anything is estimated from it; below SureMembers the
@@ -22,18 +20,17 @@ const (
 
 // A Study is what a log says.
 type Study struct {
-	Verdict  string
-	Rule     Rule
-	Reasons  []string // why there is no limit verdict
-	Ground   Interval // ground integral
-	Margin   Interval
-	NoTop    bool // a law without a top fits as well
-	Law      *Law
-	Draws    []Law
-	Fitness  []posterior // by member
-	exposure []float64
-	plain    *mixed
-	history  *History
+	Verdict string
+	Rule    Rule
+	Reasons []string // why there is no limit verdict
+	Ground  Interval // ground integral
+	Margin  Interval
+	NoTop   bool // a law without a top fits as well
+	Law     *Law
+	Draws   []Law
+	Fitness []posterior // by member
+	plain   *mixed
+	history *History
 }
 
 // An Interval is an estimate with its 95 per cent interval; infinities stand for themselves.
@@ -88,7 +85,6 @@ const (
 
 // fitLaws fits every family to the plain rule, keeps those the log cannot tell apart, and decides.
 func (s *Study) fitLaws(report Report) error {
-	h := s.history
 	list, of := cells(s.plain.sums.chosen, s.plain.sums.exposure)
 	j := &judge{list: list, grid: newGrid(list, false), base: s.plain.sums.logLik}
 	var fits []fit
@@ -129,7 +125,6 @@ func (s *Study) fitLaws(report Report) error {
 		return s.decide(j, fits, starts, logn, tiers, best, report)
 	}
 	s.Margin = s.Ground // R = 1 under the plain rule
-	_ = h
 	return nil
 }
 
@@ -218,7 +213,6 @@ func (s *Study) spread(j *judge, of []int32, fits []fit, logn, tiers fit, best f
 	}
 	s.Law = &pick.law
 	weights := j.grid.weigh(pick.law.mass())
-	s.exposure = s.plain.sums.exposure
 	posts := make([]posterior, len(j.list))
 	for i := range j.list {
 		posts[i] = j.grid.posterior(i, weights[i])
@@ -282,6 +276,3 @@ func (s *Study) Origins(members []int32) []Origin {
 	}
 	return out
 }
-
-// Leader returns the member that holds most links.
-func (h *History) Leader() share.Spread { return share.Of(h.Received()) }

@@ -68,7 +68,3 @@ func powerFitness(theta, beta float64) func(*rand.Rand) float64 {
 }
 
 func equalFitness(*rand.Rand) float64 { return 1 }
-
-func lognormalFitness(s float64) func(*rand.Rand) float64 {
-	return func(r *rand.Rand) float64 { return math.Exp(s * r.NormFloat64()) }
-}

@@ -32,7 +32,7 @@ function Choose(): JSX.Element {
 
 const separators: [string, string][] = [[",", "comma"], [";", "semicolon"], ["\t", "tab"]];
 
-function Map_(p: { phase: Extract<LogPhase, { at: "map" }> }): JSX.Element {
+function Columns(p: { phase: Extract<LogPhase, { at: "map" }> }): JSX.Element {
   const { preview, mapping, file } = p.phase;
   const columns = (role: "source" | "target" | "time", label: string): JSX.Element => (
     <label class="field">{label}
@@ -96,7 +96,7 @@ export function LogDialog(): JSX.Element {
     <Modal title="Read a log" wide onClose={() => { cancelLog(); dialog.value = undefined; }}>
       {logFault.value && <p class="fault" role="alert">{logFault.value}</p>}
       {p.at === "choose" && <Choose />}
-      {p.at === "map" && <Map_ phase={p} />}
+      {p.at === "map" && <Columns phase={p} />}
       {p.at === "reading" && <Progress what="Reading the log" done={p.done} onCancel={cancelLog} />}
       {p.at === "problems" && <Problems phase={p} />}
       {p.at === "studying" && (

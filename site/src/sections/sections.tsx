@@ -25,12 +25,12 @@ export function Section(p: { id: string; title: string; aside?: ComponentChildre
   );
 }
 
-const current_ = (): Solved | undefined => solved.value?.value;
+const standing = (): Solved | undefined => solved.value?.value;
 const setGrowth = (g: Partial<Entry["growth"]>): void => editEntry((e) => ({ ...e, growth: { ...e.growth, ...g } }));
 
 export function LawSection(p: { entry: Entry }): JSX.Element | null {
   const t = tables.value;
-  const s = current_();
+  const s = standing();
   if (!t) return null;
   const { law } = p.entry;
   const family = t.families.find((f) => f.name === law.family);
@@ -80,7 +80,7 @@ export function LawSection(p: { entry: Entry }): JSX.Element | null {
 }
 
 export function StandingSection(p: { entry: Entry }): JSX.Element | null {
-  const s = current_();
+  const s = standing();
   const g = grown.value?.value;
   const h = held.value;
   if (!s) return <Section id="standing" title="Standing"><p>{fault.value ?? "Computing…"}</p></Section>;
@@ -201,7 +201,7 @@ export function OutlookSection(p: { entry: Entry }): JSX.Element {
 
 export function LeversSection(p: { entry: Entry }): JSX.Element | null {
   const t = tables.value;
-  const s = current_();
+  const s = standing();
   if (!t) return null;
   const g = p.entry.growth;
   return (
