@@ -63,13 +63,13 @@ func (e *Entry) check(c *Casebook) error {
 		{"limit", e.Outlook.Limit, 0, 1},
 	} {
 		if !(r.v >= r.low && r.v <= r.high) {
-			return fmt.Errorf("%s is %v; it must be from %v to %v", r.name, number(r.v), number(r.low), number(r.high))
+			return fmt.Errorf("%s is %v; it must be from %v to %v", r.name, Number(r.v), Number(r.low), Number(r.high))
 		}
 	}
 	levers := map[string]float64{"headStart": g.HeadStart, "openShare": g.OpenShare, "ceiling": g.Ceiling, "distinct": 0}
 	for _, row := range growth.Levers {
 		if v := levers[row.Name]; !(v >= row.Low && v <= row.High) {
-			return fmt.Errorf("%s is %v; it must be from %v to %v", row.Name, number(v), number(row.Low), number(row.High))
+			return fmt.Errorf("%s is %v; it must be from %v to %v", row.Name, Number(v), Number(row.Low), Number(row.High))
 		}
 	}
 	if err := g.later(); err != nil {
@@ -85,7 +85,7 @@ func (g Growth) later() error {
 		v, off float64
 	}{{"kernel", g.Kernel, 1}, {"levy.above", g.Levy.Above, 0}, {"levy.rate", g.Levy.Rate, 0}, {"fading", g.Fading, 0}, {"idling", g.Idling, 0}, {"expiry", float64(g.Expiry), 0}} {
 		if r.v != r.off {
-			return fmt.Errorf("%s is %v; this version grows networks only with %s at %v", r.name, number(r.v), r.name, r.off)
+			return fmt.Errorf("%s is %v; this version grows networks only with %s at %v", r.name, Number(r.v), r.name, r.off)
 		}
 	}
 	return nil
@@ -100,14 +100,15 @@ func (e *Entry) checkStart(c *Casebook) error {
 			return fmt.Errorf("it starts from evidence, but the casebook holds none to grow from; read a log first or start from one member")
 		}
 		if least := c.Evidence.Members; e.Growth.Members < least {
-			return fmt.Errorf("members is %s, fewer than the %s the log holds", number(float64(e.Growth.Members)), number(float64(least)))
+			return fmt.Errorf("members is %s, fewer than the %s the log holds", Number(float64(e.Growth.Members)), Number(float64(least)))
 		}
 		return nil
 	}
 	return fmt.Errorf("start is %q; it is \"one\" or \"evidence\"", e.Growth.Start)
 }
 
-func number(v float64) string {
+// Number writes a number for a sentence: whole ones in groups of three.
+func Number(v float64) string {
 	if v == math.Floor(v) && math.Abs(v) < 1e9 {
 		s := fmt.Sprintf("%.0f", v)
 		for i := len(s) - 3; i > 0 && s[i-1] != '-'; i -= 3 {

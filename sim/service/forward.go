@@ -80,7 +80,7 @@ func gather(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 func sentences(o *outlook.Outlook) []string {
 	s := o.LeaderShare
 	out := []string{
-		fmt.Sprintf("At %s members the leader holds %s of all links in the middle of %d runs, and %s to %s in 95 of 100.", thousands(o.Horizon), standing.Percent(s.Q50), o.Runs, standing.Percent(s.Q025), standing.Percent(s.Q975)),
+		fmt.Sprintf("At %s members the leader holds %s of all links in the middle of %d runs, and %s to %s in 95 of 100.", casebook.Number(float64(o.Horizon)), standing.Percent(s.Q50), o.Runs, standing.Percent(s.Q025), standing.Percent(s.Q975)),
 	}
 	if o.Past.Limit > 0 {
 		out = append(out, fmt.Sprintf("It passes %s in %s of runs (± %.1f points).", standing.Percent(o.Past.Limit), wholePercent(o.Past.Chance.Chance), 100*o.Past.Error))
@@ -89,11 +89,3 @@ func sentences(o *outlook.Outlook) []string {
 }
 
 func wholePercent(x float64) string { return fmt.Sprintf("%.0f %%", 100*x) }
-
-func thousands(n int) string {
-	s := fmt.Sprint(n)
-	for i := len(s) - 3; i > 0; i -= 3 {
-		s = s[:i] + "," + s[i:]
-	}
-	return s
-}

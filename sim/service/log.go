@@ -111,7 +111,7 @@ func words(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 // entryFrom is the entry a log opens with: its network as it stands, planned to grow fourfold.
 func entryFrom(c *evidence.Condensed) casebook.Entry {
 	e := casebook.NewEntry()
-	e.Title, e.Note = "From the log", fmt.Sprintf("%d members and %d links as the log left them.", c.Members, c.Links)
+	e.Title, e.Note = "From the log", fmt.Sprintf("%s members and %s links as the log left them.", casebook.Number(float64(c.Members)), casebook.Number(float64(c.Links)))
 	e.Law = casebook.Law{Family: "evidence"}
 	e.Growth.Start = "evidence"
 	e.Growth.Members = c.Members

@@ -140,15 +140,15 @@ function prepareBrief(): void {
     if (!g || !c || !d) return;
     timer = window.setTimeout(() => {
       const size = 760;
-      void engines.main.askNewest("picture", { width: size, height: size, scale: 1.6, members: g.value.members, theme: "paper", strokes: 5000, bare: false, ceiling: c.entry.growth.ceiling }).then((r) => {
-        const rgba = r && column<Uint8Array<ArrayBuffer>>(r, "rgba");
+      void engines.main.ask("picture", { width: size, height: size, scale: 1.6, members: g.value.members, theme: "paper", strokes: 5000, bare: false, ceiling: c.entry.growth.ceiling }).then((r) => {
+        const rgba = column<Uint8Array<ArrayBuffer>>(r, "rgba");
         if (!rgba) return;
         const canvas = document.createElement("canvas");
         canvas.width = canvas.height = size;
         canvas.getContext("2d")?.putImageData(new ImageData(new Uint8ClampedArray(rgba), size, size), 0, 0);
         briefPicture.value = canvas.toDataURL("image/png");
       }, () => {});
-      void engines.main.askNewest<{ code: string }>("encode", { casebook: d.book, names: false }).then((r) => { if (r) briefCode.value = r.body.code; }, () => (briefCode.value = undefined));
+      void engines.main.ask<{ code: string }>("encode", { casebook: d.book, names: false }).then((r) => { briefCode.value = r.body.code; }, () => (briefCode.value = undefined));
     }, 700);
   });
 }

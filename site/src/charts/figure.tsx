@@ -16,6 +16,7 @@ export interface FigureProps {
   draw: (width: number) => Element | undefined;
   of: readonly unknown[]; // what the chart is drawn from: it is drawn again when one of these is another
   class?: string;
+  every?: number; // drawn at most this often, in ms; the last state is always drawn
 }
 
 /** Joins a table as RFC 4180 has it. */
@@ -37,6 +38,7 @@ export function Figure(p: FigureProps): JSX.Element {
   const ref = useRef<HTMLDivElement>(null);
   const [width, setWidth] = useState(0);
   const [open, setOpen] = useState(false);
+  const last = useRef(-Infinity);
   const [near, setNear] = useState(false); // only what is on the screen, or nearly, is drawn
   useLayoutEffect(() => {
     const el = ref.current;
@@ -51,10 +53,20 @@ export function Figure(p: FigureProps): JSX.Element {
   useLayoutEffect(() => {
     const el = ref.current;
     if (!el || width === 0 || !near) return;
-    const chart = p.draw(width);
-    chart?.setAttribute("aria-hidden", "true");
-    if (chart) el.replaceChildren(chart);
-    else el.replaceChildren();
+    const draw = (): void => {
+      last.current = performance.now();
+      const chart = p.draw(width);
+      chart?.setAttribute("aria-hidden", "true");
+      if (chart) el.replaceChildren(chart);
+      else el.replaceChildren();
+    };
+    const wait = last.current + (p.every ?? 0) - performance.now();
+    if (wait <= 0) {
+      draw();
+      return;
+    }
+    const later = window.setTimeout(draw, wait);
+    return () => clearTimeout(later);
   }, [width, near, ...p.of]);
   const save = (): void => {
     const chart = p.draw(width || 440)?.querySelector("svg") ?? ref.current?.querySelector("svg");

@@ -44,7 +44,7 @@ export function LawSection(p: { entry: Entry }): JSX.Element | null {
     <Section id="law" title="Fitness law" aside={family?.formula ?? (law.family === "evidence" ? "read from the log" : "discrete levels")}>
       {s?.curves && (
         <Figure
-          title="Density of energies p(ε)" name="law" class="plain"
+          title="Density of energies p(ε)" name="law" class="plain" every={quick.value ? 200 : 0}
           summary={`Energies from ${number(mean?.[0] ?? 0)} to ${number(mean?.at(-1) ?? 0)}; the fittest have energy 0. ${leader ? `The leader ${leader.id} has energy ${number(leader.energy)}.` : ""}`}
           of={[s.curves, leader?.id, leader?.energy, held.value]} draw={(w) => density(s.curves!, leader, held.value?.curves, w)}
           table={() => ({ columns: ["energy", "density"], rows: s.curves!.eps.map((e, i) => [e, s.curves!.density[i] ?? 0]) })}

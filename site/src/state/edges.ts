@@ -15,9 +15,18 @@ const unasked = 1_000_000;
 /** The bytes of the network on show, for the stage. */
 export const network = signal<Uint8Array<ArrayBuffer> | undefined>(undefined);
 
+/** A number for every evidence seen: two logs may share name and size. Evidence is replaced whole, never changed. */
+const numbers = new WeakMap<object, number>();
+let evidences = 0;
+function numberOf(e: object): number {
+  const known = numbers.get(e) ?? ++evidences;
+  numbers.set(e, known);
+  return known;
+}
+
 /** The question the open entry asks, as text: equal text, equal answer. */
 export function keyOf(book: Casebook): string {
-  return JSON.stringify(book.entries[0]) + (book.evidence ? `|${book.evidence.rows}|${book.evidence.label}` : "");
+  return JSON.stringify(book.entries[0]) + (book.evidence ? `|${numberOf(book.evidence)}` : "");
 }
 
 function report(e: unknown): void {
