@@ -96,4 +96,36 @@ for (const members of [1000, 5000, 20000]) {
   const p90 = (v) => [...v].sort((a, b) => a - b)[Math.floor(0.9 * v.length)];
   console.log(`  ${String(members).padStart(6)} members: curves ${median(curves).toFixed(0)} (${p90(curves).toFixed(0)}), picture ${median(picture).toFixed(0)} (${p90(picture).toFixed(0)})`);
 }
+
+console.log("a sustained drag, an input in every frame for 4 s: frames, pictures and curves a second");
+for (const members of [1000, 5000, 20000]) {
+  const box = page.getByRole("textbox", { name: "Members", exact: true });
+  await box.fill(String(members));
+  await box.blur();
+  await page.waitForFunction((n) => document.querySelector(".readout")?.textContent.includes(n.toLocaleString("en")), members);
+  await page.waitForTimeout(1500);
+  const seen = await page.evaluate(async () => {
+    const slider = [...document.querySelectorAll("input[type=range]")].find((e) => document.getElementById(e.getAttribute("aria-labelledby"))?.textContent.startsWith("Sharpness"));
+    const chart = document.querySelector("#standing .trio .chart");
+    const w = document.querySelector("iframe").contentWindow;
+    const said = w.stageSaid;
+    let pictures = 0, curves = 0, frames = 0;
+    w.stageSaid = (s) => { said(s); pictures++; };
+    const watch = new MutationObserver(() => curves++);
+    watch.observe(chart, { childList: true });
+    slider.dispatchEvent(new PointerEvent("pointerdown", { bubbles: true }));
+    const begun = performance.now();
+    while (performance.now() - begun < 4000) {
+      slider.value = String(200 + 5 * Math.abs(60 - (frames++ % 120))); // one step of the slider in every frame
+      slider.dispatchEvent(new Event("input", { bubbles: true }));
+      await new Promise(requestAnimationFrame);
+    }
+    const seconds = (performance.now() - begun) / 1000;
+    slider.dispatchEvent(new PointerEvent("pointerup", { bubbles: true }));
+    w.stageSaid = said;
+    watch.disconnect();
+    return { frames: frames / seconds, pictures: pictures / seconds, curves: curves / seconds };
+  });
+  console.log(`  ${String(members).padStart(6)} members: frames ${seen.frames.toFixed(0)}, pictures ${seen.pictures.toFixed(0)}, curves ${seen.curves.toFixed(0)}`);
+}
 await browser.close();

@@ -1,8 +1,8 @@
 package raster
 
 import (
-	"encoding/binary"
 	"math"
+	"unsafe"
 
 	"preponder/render/scene"
 )
@@ -11,17 +11,24 @@ import (
 type Canvas struct {
 	Width, Height int
 	Pix           []byte
+	pix           []uint32 // the same bytes, a pixel each: red lowest, opaque
 	at            placed
 	distance      []uint16
 }
 
-// NewCanvas returns a canvas, reusing the bytes of old where they suffice.
+// NewCanvas returns a canvas, in the memory of old where it suffices.
 func NewCanvas(width, height int, old *Canvas) *Canvas {
-	n := 4 * width * height
-	if old != nil && cap(old.Pix) >= n {
-		return &Canvas{width, height, old.Pix[:n], old.at, old.distance}
+	n := width * height
+	c := &Canvas{Width: width, Height: height}
+	if old != nil {
+		c.pix, c.at, c.distance = old.pix, old.at, old.distance
 	}
-	return &Canvas{Width: width, Height: height, Pix: make([]byte, n)}
+	if cap(c.pix) < n {
+		c.pix = make([]uint32, n)
+	}
+	c.pix = c.pix[:n]
+	c.Pix = unsafe.Slice((*byte)(unsafe.Pointer(unsafe.SliceData(c.pix))), 4*n) // every target of ours is little-endian
+	return c
 }
 
 // Paint paints a whole picture.
@@ -102,8 +109,8 @@ func (c *Canvas) ground(p scene.Picture, t Theme) {
 		table[i] = pack(col)
 	}
 	table[steps+1] = pack(t.Back)
-	for i, d := range c.distance {
-		binary.LittleEndian.PutUint32(c.Pix[4*i:], table[d])
+	for i, d := range c.distance[:len(c.pix)] {
+		c.pix[i] = table[d]
 	}
 }
 
@@ -145,11 +152,13 @@ func (c *Canvas) blend(x, y int, col Colour, a float64) {
 	if x < 0 || y < 0 || x >= c.Width || y >= c.Height || a <= 0 {
 		return
 	}
-	q := c.Pix[4*(y*c.Width+x) : 4*(y*c.Width+x)+3 : 4*(y*c.Width+x)+3]
-	k := int32(a * 256)
-	q[0] += byte((int32(col[0]) - int32(q[0])) * k >> 8)
-	q[1] += byte((int32(col[1]) - int32(q[1])) * k >> 8)
-	q[2] += byte((int32(col[2]) - int32(q[2])) * k >> 8)
+	o := y*c.Width + x
+	c.pix[o] = over(c.pix[o], uint32(col[0])|uint32(col[2])<<16, uint32(col[1]), uint32(a*256))
+}
+
+// over lays a colour, its red and blue in one word and its green in another, over a pixel with a cover of part in 256.
+func over(d, redBlue, green, part uint32) uint32 {
+	return 255<<24 | (d&0xff00ff*(256-part)+redBlue*part+0x800080)>>8&0xff00ff | (d>>8&0xff*(256-part)+green*part+0x80)&0xff00
 }
 
 func (c *Canvas) stroke(s scene.Stroke, t Theme, gain float64) {
@@ -163,9 +172,10 @@ func (c *Canvas) stroke(s scene.Stroke, t Theme, gain float64) {
 	c.Line(s.X0, s.Y0, s.X1, s.Y1, s.W0, s.W1, col, min(1, s.Alpha*gain))
 }
 
-// Line paints a line whose width goes from w0 to w1, by coverage across its longer axis.
+// Line paints a line whose width goes from w0 to w1, by coverage across its longer axis. Places across are in 1/65536 of
+// a pixel, coverage in 1/256.
 func (c *Canvas) Line(x0, y0, x1, y1, w0, w1 float64, col Colour, alpha float64) {
-	across, along := 4*c.Width, 4 // bytes from pixel to pixel across and along the line
+	across, along := c.Width, 1 // pixels from one to the next across and along the line
 	far, end := c.Height, c.Width
 	if steep := math.Abs(y1-y0) > math.Abs(x1-x0); steep {
 		x0, y0, x1, y1 = y0, x0, y1, x1
@@ -176,31 +186,31 @@ func (c *Canvas) Line(x0, y0, x1, y1, w0, w1 float64, col Colour, alpha float64)
 		x0, y0, x1, y1, w0, w1 = x1, y1, x0, y0, w1, w0
 	}
 	dx := x1 - x0
-	if dx < 1e-6 {
+	if !(dx >= 1e-6) || x1 <= 0 || x0 >= float64(end) {
 		return
 	}
 	slope := (y1 - y0) / dx
 	lean := math.Sqrt(1+slope*slope) / 2 // half the width along the shorter axis
-	taper := (w1 - w0) / dx
-	r, g, b := int32(col[0]), int32(col[1]), int32(col[2])
-	alpha *= 256
-	for i := max(0, int(x0)); i <= min(end-1, int(x1)); i++ {
-		from, to := max(float64(i), x0), min(float64(i+1), x1)
-		cover := (to - from) * alpha
-		if cover <= 0 {
-			continue
+	taper := (w1 - w0) / dx * lean
+	half := w0 * lean
+	first, last := max(0, int(x0)), min(end-1, int(x1))
+	redBlue, green := uint32(col[0])|uint32(col[2])<<16, uint32(col[1])
+	top := int64(far) << 16
+	full := 256 * alpha
+	for i := first; i <= last; i++ {
+		at, cover := float64(i)+0.5-x0, full
+		if i == first || i == last {
+			from, to := max(float64(i), x0), min(float64(i+1), x1)
+			at, cover = (from+to)/2-x0, (to-from)*full
 		}
-		at := (from+to)/2 - x0
-		y := y0 + slope*at
-		half := (w0 + taper*at) * lean
-		low, high := max(0, y-half), min(float64(far), y+half)
-		for k := int(low); float64(k) < high; k++ {
-			a := int32((min(float64(k+1), high) - max(float64(k), low)) * cover)
-			o := k*across + i*along
-			q := c.Pix[o : o+3 : o+3]
-			q[0] += byte((r - int32(q[0])) * a >> 8)
-			q[1] += byte((g - int32(q[1])) * a >> 8)
-			q[2] += byte((b - int32(q[2])) * a >> 8)
+		a := int64(cover)
+		y, h := y0+slope*at, half+taper*at
+		low, high := max(0, int64(65536*(y-h))), min(top, int64(65536*(y+h)))
+		o := int(low>>16)*across + i*along
+		for k := low &^ 0xffff; k < high; k += 1 << 16 {
+			part := uint32((min(k+1<<16, high) - max(k, low)) * a >> 16)
+			c.pix[o] = over(c.pix[o], redBlue, green, part)
+			o += across
 		}
 	}
 }

@@ -9,8 +9,8 @@ import (
 	"preponder/render/scene"
 )
 
-// Strokes of a picture at leisure, on a phone, and while something moves; ticks of a tween.
-const strokesFull, strokesSmall, strokesQuick, tweenTicks = 6000, 2500, 1800, 54
+// Ticks of a tween.
+const tweenTicks = 54
 
 // A Game is the stage. Its methods are called from one goroutine at a time.
 type Game struct {
@@ -30,8 +30,10 @@ type Game struct {
 	shown   int   // members shown last
 	spare   *ebiten.Image
 
+	stale bool // the picture on show was painted elsewhere, and is not yet arranged here
+
 	// Painted is called after every new picture, Busy when motion begins and ends.
-	Painted func(scene.Picture, scene.View)
+	Painted func(scene.Told)
 	Busy    func(bool)
 	busy    bool
 }
@@ -44,11 +46,38 @@ func New() *Game {
 // Load takes a network.
 func (g *Game) Load(c scene.Columns) { g.in.load(c) }
 
+// LoadPainted takes a network with its picture, painted elsewhere while something is dragged. A picture of another view
+// than the present one is not shown: the network is painted here.
+func (g *Game) LoadPainted(c scene.Columns, pix []byte, shot scene.Shot) {
+	s := g.in.settings
+	s.Members = shot.View.Members
+	if g.canvas == nil || len(pix) != len(g.canvas.Pix) || g.wanted(s, false) != shot.View || s.Theme != shot.Theme {
+		g.Load(c)
+		return
+	}
+	g.in.columns, g.in.settings, g.in.fresh, g.in.repaint = c, s, true, false
+	g.view, g.shown = shot.View, s.Members
+	copy(g.canvas.Pix, pix)
+	g.dirty, g.stale = true, true
+	g.leader = -1
+	if shot.Told.Leader != nil {
+		g.leader = shot.Told.Leader.Member
+	}
+	if g.Painted != nil {
+		g.Painted(shot.Told)
+	}
+}
+
 // Set takes what is wanted of it.
 func (g *Game) Set(s Settings) { g.in.set(s) }
 
 // Pick returns the member under a point in CSS pixels, or -1.
-func (g *Game) Pick(x, y float64) int { return scene.Pick(g.picture, x*g.scale, y*g.scale) }
+func (g *Game) Pick(x, y float64) int {
+	if g.stale {
+		g.picture, g.stale = scene.Again(g.picture, g.in.columns, g.view), false
+	}
+	return scene.Pick(g.picture, x*g.scale, y*g.scale)
+}
 
 // Place returns where a member lies and its radius, in CSS pixels.
 func (g *Game) Place(member int) (x, y, r float64) {
@@ -98,29 +127,34 @@ func ease(t float64) float64 {
 	return 1 - math.Pow(2-2*t, 3)/2
 }
 
+// wanted returns the view that settings ask for.
+func (g *Game) wanted(s Settings, moving bool) scene.View {
+	strokes := scene.Full
+	if s.Small {
+		strokes = scene.Small
+	}
+	if moving || s.Quick {
+		strokes = scene.Quick
+	}
+	return scene.View{Width: float64(g.width), Height: float64(g.height), Scale: g.scale, Members: s.Members, Arrival: ease(g.arrival), Strokes: strokes,
+		Zoom: s.Zoom, PanX: s.PanX, PanY: s.PanY, Ceiling: s.Ceiling, Following: s.Follow, Label: s.Label}
+}
+
 // paint arranges and paints the picture.
 func (g *Game) paint(moving bool) {
 	if g.width == 0 || g.height == 0 {
 		return
 	}
 	s := g.in.settings
-	strokes := strokesFull
-	if s.Small {
-		strokes = strokesSmall
-	}
-	if moving || s.Quick {
-		strokes = strokesQuick
-	}
-	g.view = scene.View{Width: float64(g.width), Height: float64(g.height), Scale: g.scale, Members: s.Members, Arrival: ease(g.arrival), Strokes: strokes,
-		Zoom: s.Zoom, PanX: s.PanX, PanY: s.PanY, Ceiling: s.Ceiling, Following: s.Follow, Label: s.Label}
+	g.view = g.wanted(s, moving)
 	g.theme = raster.Named(s.Theme)
-	g.picture = scene.Again(g.picture, g.in.columns, g.view)
+	g.picture, g.stale = scene.Again(g.picture, g.in.columns, g.view), false
 	g.canvas = raster.NewCanvas(g.width, g.height, g.canvas)
 	raster.Paint(g.canvas, g.picture, g.theme)
 	g.dirty = true
 	g.arrivals()
 	if g.Painted != nil {
-		g.Painted(g.picture, g.view)
+		g.Painted(g.picture.Tell(g.view))
 	}
 }
 

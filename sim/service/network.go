@@ -78,6 +78,7 @@ type Curves struct {
 type Level struct {
 	Eps    wire.Num `json:"eps"`
 	Weight wire.Num `json:"weight"`
+	Pull   wire.Num `json:"pull"` // log10 of fitness over its mean
 }
 
 // solve answers with the standing of an entry.
@@ -107,13 +108,14 @@ func solve(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 func curvesOf(l law.Law, beta float64, rule bose.Rule, s bose.Solution) *Curves {
 	c := bose.CurvesOf(l, beta, rule, s)
 	out := &Curves{Eps: wire.Nums(c.Eps), Density: wire.Nums(c.Density), Exponent: wire.Nums(c.Exponent), Occupation: wire.Nums(c.Occupation), Beta: wire.Nums(c.Beta), BetaMu: wire.Nums(c.Mu), Levels: []Level{}}
+	pull := func(e float64) wire.Num { return wire.Num((-beta*e - math.Log(s.MeanFitness)) / math.Ln10) }
 	for _, e := range c.Eps {
-		out.Pull = append(out.Pull, wire.Num((-beta*e-math.Log(s.MeanFitness))/math.Ln10))
+		out.Pull = append(out.Pull, pull(e))
 	}
 	if levels, ok := l.(law.Leveled); ok {
 		energy, weight := levels.Levels()
 		for i := range energy {
-			out.Levels = append(out.Levels, Level{wire.Num(energy[i]), wire.Num(weight[i])})
+			out.Levels = append(out.Levels, Level{wire.Num(energy[i]), wire.Num(weight[i]), pull(energy[i])})
 		}
 	}
 	return out

@@ -53,6 +53,9 @@ func receive(data []byte) {
 			out = picture(p)
 		} else {
 			out = engine.Handle(p, turns(p.ID))
+			if p.Kind == "grow" {
+				out = withPicture(p, out)
+			}
 		}
 		delete(cancelled, p.ID)
 		post(out)

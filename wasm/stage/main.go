@@ -35,7 +35,7 @@ func (g *game) Update() error {
 func main() {
 	g := &game{Game: view.New()}
 	window := js.Global()
-	g.Painted = func(p scene.Picture, v scene.View) { window.Call("stageSaid", said(p, v)) }
+	g.Painted = func(t scene.Told) { window.Call("stageSaid", said(t)) }
 	g.Busy = func(on bool) { window.Call("stageBusy", on) }
 	call := func(f func(args []js.Value) any) js.Func {
 		return js.FuncOf(func(_ js.Value, args []js.Value) (out any) {
@@ -62,7 +62,16 @@ func main() {
 			if err := json.Unmarshal(p.Body, &head); err != nil {
 				panic(err)
 			}
-			g.Load(scene.Columns{Targets: p.Column("targets").Int32, Before: p.Column("before").Int32, Rank: p.Column("rank").Float32, Pull: p.Column("pull").Float32, From: head.From})
+			c := scene.Columns{Targets: p.Column("targets").Int32, Before: p.Column("before").Int32, Rank: p.Column("rank").Float32, Pull: p.Column("pull").Float32, From: head.From}
+			if pix := p.Column("rgba").Bytes; len(pix) > 0 {
+				var shot scene.Shot
+				if err := json.Unmarshal(p.Column("shot").Bytes, &shot); err != nil {
+					panic(err)
+				}
+				g.LoadPainted(c, pix, shot)
+				return nil
+			}
+			g.Load(c)
 			return nil
 		}),
 		"set": call(func(args []js.Value) any {
@@ -88,33 +97,8 @@ func main() {
 	}
 }
 
-// said is what the page needs to lay its labels over a picture, in CSS pixels.
-func said(p scene.Picture, v scene.View) string {
-	s := v.Scale
-	out := map[string]any{"cx": p.CX / s, "cy": p.CY / s, "r": p.R / s, "members": v.Members, "links": p.Links, "oneStrokeFor": p.OneStrokeFor}
-	var rings []float64
-	for _, r := range p.Rings {
-		rings = append(rings, r/s)
-	}
-	out["rings"] = rings
-	place := func(d scene.Disc) map[string]any {
-		return map[string]any{"member": d.Member, "share": d.Share, "x": d.X / s, "y": d.Y / s, "r": d.R / s}
-	}
-	if p.Leader >= 0 {
-		out["leader"] = place(p.Discs[p.Leader])
-		out["label"] = map[string]any{"x": p.Label.X / s, "y": p.Label.Y / s}
-		if p.Leader > 0 {
-			out["next"] = place(p.Discs[p.Leader-1])
-		}
-	}
-	capped := []int32{}
-	for _, d := range p.Discs {
-		if d.Capped {
-			capped = append(capped, d.Member)
-		}
-	}
-	out["capped"] = capped
-	b, err := json.Marshal(out)
+func said(t scene.Told) string {
+	b, err := json.Marshal(t)
 	if err != nil {
 		panic(err)
 	}

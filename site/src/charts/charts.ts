@@ -1,12 +1,12 @@
 // Charts: data in, element out. Ink is the law, ember the leader, blues its rivals, open circles what was counted.
-import * as Plot from "@observablehq/plot";
 import type { Curves, Grown, Outlook, Solved } from "../state/types";
 import { count, number, percent } from "../words/format";
+import { Plane, type Point } from "./plane";
 
 const css = (name: string): string => `var(--${name})`;
-const style = { background: "none", fontFamily: "inherit", fontSize: "11.5px", color: "currentColor", overflow: "visible" };
-const ember = css("ember"), ink = css("ink"), quiet = css("ink-2"), line = css("hairline"), blue = css("r3");
+const ember = css("ember"), emberText = css("ember-text"), ink = css("ink"), quiet = css("ink-2"), line = css("hairline"), blue = css("r3");
 const finite = (x: number | null | undefined): x is number => typeof x === "number" && Number.isFinite(x);
+const dashed = { stroke: quiet, width: 1.5, dash: "3 3" };
 
 /** The colour ramp's place of a pull (log10 over the mean), as a CSS variable of nine. */
 function tone(pull: number): string {
@@ -14,66 +14,69 @@ function tone(pull: number): string {
   return css(`r${Math.round(8 * u)}`);
 }
 
-interface Point { x: number; y: number }
 /** Powers of ten in a range, every other one where they would touch. */
 const decades = (low: number, high: number): number[] => Array.from({ length: 9 }, (_, i) => 10 ** i).filter((d) => d >= low && d <= high && (high < 1e6 || Math.log10(d) % 2 === Math.floor(Math.log10(high)) % 2));
 const points = (x: number[], y: (number | null)[]): Point[] => x.flatMap((v, i) => { const w = y[i]; return finite(w) ? [{ x: v, y: w }] : []; });
 
 /** p(eps), its area in the colours of the disc; the leader's place. */
 export function density(c: Curves, leader: { id: string; energy: number } | undefined, held: Curves | undefined, width: number): Element {
-  if (c.levels.length > 0) {
-    return Plot.plot({
-      width, height: 150, style, marginLeft: 8, marginRight: 8, marginBottom: 32, x: { label: null, ticks: 5, line: true }, y: { axis: null, domain: [0, Math.max(...c.levels.map((l) => l.weight)) * 1.2] },
-      marks: [Plot.ruleX(c.levels, { x: "eps", y: "weight", stroke: blue, strokeWidth: 5 })],
-    });
-  }
-  const top = Math.min(Math.max(...c.density.slice(1)), 4 * (c.density[Math.floor(c.density.length / 2)] ?? 1) + 4);
-  const law = points(c.eps, c.density.map((d) => Math.min(d, top * 1.05)));
-  // Neighbours of one colour are one area; areas overlap by a point, so that no seam shows.
-  const bands: (Point & { fill: string; band: number })[] = [];
-  law.forEach((p, i) => {
-    const fill = tone(c.pull?.[i] ?? 0);
-    const before = bands.at(-1);
-    if (before && before.fill !== fill) bands.push({ ...p, fill: before.fill, band: before.band });
-    bands.push({ ...p, fill, band: before ? before.band + (before.fill === fill ? 0 : 1) : 0 });
-  });
+  const discrete = c.levels.length > 0;
+  const law = discrete ? c.levels.map((l) => ({ x: l.eps, y: l.weight })) : points(c.eps, c.density);
   const low = law[0]?.x ?? 0, high = law.at(-1)?.x ?? 1;
-  const leaderSide = leader && leader.energy > (low + high) / 2 ? "end" : "start";
-  return Plot.plot({
-    width, height: 170, style, marginLeft: 8, marginRight: 10, marginBottom: 38, marginTop: 22,
-    x: { label: null, ticks: 5, line: true, domain: [Math.min(0, low), high] }, y: { axis: null, domain: [0, top * 1.08] },
-    marks: [
-      Plot.areaY(bands, { x: "x", y1: 0, y2: "y", z: "band", fill: "fill" }),
-      held && Plot.line(points(held.eps, held.density), { x: "x", y: "y", stroke: quiet, strokeDasharray: "3 3" }),
-      Plot.line(law, { x: "x", y: "y", stroke: ink, strokeWidth: 1.75, clip: true }),
-      leader && leader.energy <= high ? Plot.ruleX([leader], { x: "energy", y1: 0, y2: top * 1.08, stroke: ember, strokeWidth: 2 }) : null,
-      leader && leader.energy <= high ? Plot.text([leader], { x: "energy", y: top * 1.08, dy: -9, text: "id", fill: css("ember-text"), fontWeight: 600, textAnchor: leaderSide }) : null,
-      Plot.text(["fittest"], { frameAnchor: "bottom-left", dy: 36, textAnchor: "start", fill: quiet }),
-      Plot.text(["energy ε"], { frameAnchor: "bottom", dy: 36, fill: quiet }),
-      Plot.text(["least fit"], { frameAnchor: "bottom-right", dy: 36, textAnchor: "end", fill: quiet }),
-    ],
-  });
+  const middle = law[Math.floor(law.length / 2)]?.y ?? 1;
+  const most = Math.max(...(discrete ? law : law.slice(1)).map((p) => p.y));
+  const top = discrete ? most * 1.15 : Math.min(most, 4 * middle + 4); // an edge that goes to infinity is cut
+  const spare = discrete ? 0.04 * (high - low || 1) : 0;
+  const p = new Plane({ width, height: 170, margin: { left: 8, right: 10, bottom: 38, top: 22 }, x: { domain: [Math.min(0, low) - spare, (high > low ? high : low + 1) + spare], ticks: 5 }, y: { domain: [0, top * 1.08], hidden: true } });
+  if (discrete) {
+    for (const l of c.levels) p.upright(l.eps, { stroke: tone(l.pull ?? 0), width: 6 }, [0, l.weight]);
+  } else {
+    // Neighbours of one colour are one area, with a hair's stroke so that no seam shows.
+    let band: { x: number; low: number; high: number }[] = [];
+    let fill = "";
+    law.forEach((q, i) => {
+      const at = { x: q.x, low: 0, high: Math.min(q.y, top * 1.08) };
+      const next = tone(c.pull?.[i] ?? 0);
+      if (next !== fill) {
+        if (band.length > 0) p.area([...band, at], { fill, stroke: fill, width: 0.6 });
+        band = [];
+        fill = next;
+      }
+      band.push(at);
+    });
+    p.area(band, { fill, stroke: fill, width: 0.6 });
+    if (held && held.levels.length === 0) p.line(points(held.eps, held.density).map((q) => ({ x: q.x, y: Math.min(q.y, top * 1.08) })).filter((q) => q.x <= high), dashed);
+    p.line(law.map((q) => ({ x: q.x, y: Math.min(q.y, top * 1.08) })), { stroke: ink });
+  }
+  if (leader && leader.energy <= high) {
+    p.upright(leader.energy, { stroke: ember, width: 2 });
+    p.text({ x: leader.energy, y: top * 1.08 }, leader.id, { dy: -9, fill: emberText, weight: 600, anchor: leader.energy > (low + high) / 2 ? "end" : "start" });
+  }
+  p.foot("fittest", "start", quiet).foot("energy ε", "middle", quiet).foot("least fit", "end", quiet);
+  return p.axes();
 }
+
+const small = { width: 0, height: 132, margin: { left: 34, right: 14, bottom: 22, top: 10 } };
 
 /** f(eps): how fast a member's tickets grow. */
 export function exponent(s: Solved, g: Grown | undefined, held: Solved | undefined, width: number): Element | undefined {
   const c = s.curves;
   if (!c?.exponent?.length) return undefined;
-  const near = (e: number): number => {
-    const i = c.eps.findIndex((x) => x >= e);
-    return c.exponent?.[i < 0 ? c.eps.length - 1 : i] ?? 0;
-  };
-  const top = (g?.ranking ?? []).map((m, i) => ({ x: m.energy, y: near(m.energy), id: m.id, leader: i === 0 }));
-  return Plot.plot({
-    width, height: 132, style, marginLeft: 34, marginRight: 14, marginBottom: 22, marginTop: 10, x: { label: null, ticks: 3, line: true }, y: { label: null, domain: [0, 1], ticks: [0, 0.5, 1] },
-    marks: [
-      Plot.ruleY([0.5, 1], { stroke: line }),
-      held?.curves?.exponent && Plot.line(points(held.curves.eps, held.curves.exponent), { x: "x", y: "y", stroke: quiet, strokeDasharray: "3 3" }),
-      Plot.line(points(c.eps, c.exponent), { x: "x", y: "y", stroke: ink, strokeWidth: 1.75 }),
-      Plot.dot(top, { x: "x", y: "y", r: (d: { leader: boolean }) => (d.leader ? 4.5 : 3), fill: (d: { leader: boolean }) => (d.leader ? ember : blue) }),
-      Plot.text(top.slice(0, 1), { x: "x", y: "y", text: "id", dx: 8, textAnchor: "start", fill: css("ember-text"), fontWeight: 600 }),
-    ],
+  const f = points(c.eps, c.exponent);
+  const low = f[0]?.x ?? 0, high = Math.max(f.at(-1)?.x ?? 1, low + 1e-9);
+  const near = (e: number): number => f.find((q) => q.x >= e)?.y ?? f.at(-1)?.y ?? 0;
+  const p = new Plane({ ...small, width, x: { domain: [Math.min(0, low), high], ticks: 3 }, y: { domain: [0, 1], ticks: [0, 0.5, 1] } });
+  p.across(0.5, { stroke: line }).across(1, { stroke: line });
+  if (held?.curves?.exponent) p.line(points(held.curves.eps, held.curves.exponent).filter((q) => q.x <= high), dashed);
+  p.line(f, { stroke: ink });
+  const ranking = g?.ranking.filter((m) => m.energy <= high) ?? [];
+  [...ranking].reverse().forEach((m) => {
+    const leader = m === ranking[0];
+    p.dot({ x: m.energy, y: near(m.energy) }, leader ? 4.5 : 3, { fill: leader ? ember : blue });
   });
+  const first = ranking[0];
+  if (first) p.text({ x: first.energy, y: near(first.energy) }, first.id, { dx: 8, fill: emberText, weight: 600 });
+  return p.axes();
 }
 
 /** n(eps): the Bose curve, and what was counted in this very network. */
@@ -81,18 +84,18 @@ export function occupation(s: Solved, g: Grown | undefined, held: Solved | undef
   const c = s.curves;
   if (!c?.occupation?.length) return undefined;
   const low = 0.001, high = 1000;
-  const clip = (p: Point[]): Point[] => p.filter((q) => q.y >= low && q.y <= high * 10);
-  const circles = (g?.counted ?? []).filter((q) => q.n >= low).map((q) => ({ ...q, lo: Math.max(low, q.n - q.error), hi: q.n + q.error }));
-  return Plot.plot({
-    width, height: 132, style, marginLeft: 40, marginRight: 10, marginBottom: 22, marginTop: 10, x: { label: null, ticks: 3, line: true }, y: { type: "log", label: null, domain: [low, high], ticks: [0.001, 1, 1000], tickFormat: (d: number) => (d >= 1000 ? "1,000" : String(d)), clamp: true },
-    marks: [
-      Plot.ruleY([0.001, 1, 1000], { stroke: line }),
-      held?.curves?.occupation && Plot.line(clip(points(held.curves.eps, held.curves.occupation)), { x: "x", y: "y", stroke: quiet, strokeDasharray: "3 3" }),
-      Plot.line(clip(points(c.eps, c.occupation)), { x: "x", y: "y", stroke: ink, strokeWidth: 1.75 }),
-      Plot.ruleX(circles, { x: "eps", y1: "lo", y2: "hi", stroke: blue, strokeOpacity: 0.6 }),
-      Plot.dot(circles, { x: "eps", y: "n", r: 3.2, stroke: blue, strokeWidth: 1.6, fill: css("sheet") }),
-    ],
-  });
+  const inside = (q: Point[]): Point[] => q.filter((r) => r.y >= low).map((r) => ({ x: r.x, y: Math.min(r.y, high * 1.2) }));
+  const curve = inside(points(c.eps, c.occupation));
+  const from = Math.min(0, c.eps[0] ?? 0), to = Math.max(c.eps.at(-1) ?? 1, from + 1e-9);
+  const p = new Plane({ ...small, margin: { ...small.margin, left: 40 }, width, x: { domain: [from, to], ticks: 3 }, y: { domain: [low, high], log: true, ticks: [0.001, 1, 1000], format: (d) => (d >= 1000 ? "1,000" : String(d)) } });
+  for (const v of [0.001, 1, 1000]) p.across(v, { stroke: line });
+  if (held?.curves?.occupation) p.line(inside(points(held.curves.eps, held.curves.occupation)).filter((q) => q.x <= to), dashed);
+  p.line(curve, { stroke: ink });
+  for (const q of (g?.counted ?? []).filter((r) => r.n >= low && r.eps <= to)) {
+    p.upright(q.eps, { stroke: blue, opacity: 0.6 }, [Math.max(low, q.n - q.error), Math.min(q.n + q.error, high * 1.2)]);
+    p.dot({ x: q.eps, y: Math.min(q.n, high * 1.2) }, 3.2, { stroke: blue, width: 1.6, fill: css("sheet") });
+  }
+  return p.axes();
 }
 
 /** beta mu over sharpness, the critical point and where we are. */
@@ -102,56 +105,47 @@ export function potential(s: Solved, sharpness: number, width: number): Element 
   const low = Math.min(-1.2, Math.max(-4, c.betaMuOver[0] ?? -1));
   const now = { x: sharpness, y: Math.max(low, s.betaMu ?? 0) };
   const end = c.beta.at(-1) ?? 10;
-  return Plot.plot({
-    width, height: 132, style, marginLeft: 34, marginRight: 10, marginBottom: 22, marginTop: 10, x: { label: null, domain: [0, end], ticks: 3, line: true }, y: { label: null, domain: [low, 0], ticks: 3, clamp: true },
-    marks: [
-      finite(s.criticalSharpness) && s.criticalSharpness < end ? Plot.rectX([{ x1: s.criticalSharpness, x2: end }], { x1: "x1", x2: "x2", fill: css("well") }) : null,
-      finite(s.criticalSharpness) && s.criticalSharpness < end ? Plot.ruleX([s.criticalSharpness], { stroke: quiet, strokeDasharray: "3 3" }) : null,
-      finite(s.criticalSharpness) && s.criticalSharpness < end ? Plot.text([s.criticalSharpness], { x: (d: number) => d, y: low, dy: -7, dx: 5, text: ["critical"], textAnchor: "start", fill: quiet }) : null,
-      Plot.line(points(c.beta, c.betaMuOver), { x: "x", y: "y", stroke: ink, strokeWidth: 1.75 }),
-      Plot.dot([now], { x: "x", y: "y", r: 4.5, fill: ink }),
-      Plot.text([now], { x: "x", y: "y", text: ["now"], dy: 12, dx: now.x > end * 0.85 ? -8 : 0, fill: ink }),
-    ],
-  });
+  const p = new Plane({ ...small, width, x: { domain: [0, end], ticks: 3 }, y: { domain: [low, 0], ticks: 3 } });
+  if (finite(s.criticalSharpness) && s.criticalSharpness < end) {
+    p.band(s.criticalSharpness, end, { fill: css("well") }).upright(s.criticalSharpness, dashed);
+    p.text({ x: s.criticalSharpness, y: low }, "critical", { dx: 5, dy: -7, fill: quiet });
+  }
+  p.line(points(c.beta, c.betaMuOver).map((q) => ({ x: q.x, y: Math.max(q.y, low) })), { stroke: ink });
+  p.dot(now, 4.5, { fill: ink });
+  p.text(now, "now", { dy: now.y > low / 3 ? 13 : -11, dx: now.x > end * 0.85 ? -8 : 0, anchor: "middle", fill: ink });
+  return p.axes();
 }
 
 /** Margin gauge: sharpness on its way to the critical point and beyond. */
 export function gauge(s: Solved, sharpness: number, width: number): Element | undefined {
   if (!finite(s.criticalSharpness)) return undefined;
   const end = Math.max(2 * s.criticalSharpness, sharpness * 1.1);
-  return Plot.plot({
-    width, height: 54, style, marginLeft: 6, marginRight: 6, marginBottom: 20, marginTop: 20, x: { domain: [0, end], label: null, ticks: 4 }, y: { axis: null, domain: [0, 1] },
-    marks: [
-      Plot.rectX([{ a: s.criticalSharpness, b: end }], { x1: "a", x2: "b", y1: 0.2, y2: 0.8, fill: css("r6"), fillOpacity: 0.55 }),
-      Plot.ruleY([0.5], { stroke: css("control") }),
-      Plot.ruleX([s.criticalSharpness], { stroke: ink }),
-      Plot.dot([sharpness], { x: (d: number) => d, y: 0.5, r: 5, fill: ink, symbol: "triangle2", dy: -9 }),
-      Plot.text([s.criticalSharpness], { x: (d: number) => d, frameAnchor: "top", dy: -12, text: (d: number) => `critical ${number(d)}`, fill: quiet }),
-    ],
-  });
+  const p = new Plane({ width, height: 54, margin: { left: 6, right: 6, bottom: 20, top: 20 }, x: { domain: [0, end], ticks: 4 }, y: { domain: [0, 1], hidden: true } });
+  p.band(s.criticalSharpness, end, { fill: css("r6"), opacity: 0.55 }, [0.2, 0.8]);
+  p.across(0.5, { stroke: css("control") }).upright(s.criticalSharpness, { stroke: ink });
+  p.text({ x: s.criticalSharpness, y: 1 }, `critical ${number(s.criticalSharpness)}`, { dy: -11, anchor: "middle", fill: quiet });
+  p.pointer({ x: sharpness, y: 0.5 }, 5, ink);
+  return p.axes();
 }
 
 /** Shares over size: the largest five, and when the lead changed. */
 export function shares(g: Grown, width: number): Element {
-  const rows = g.path.followed.flatMap((f, i) => f.map((y, k) => ({ x: g.path.members[k]!, y, id: g.ranking[i]?.id ?? "", i })));
-  const leader = g.path.members.map((x, k) => ({ x, y: g.path.share[k]! }));
-  const end = g.path.members.at(-1) ?? 1;
+  const { members } = g.path;
+  const end = members.at(-1) ?? 1;
+  const start = Math.max(2, Math.min(10, members[0] ?? 2));
+  const leader = members.map((x, k) => ({ x, y: g.path.share[k]! })).filter((q) => q.x >= start);
   const top = Math.min(1, Math.max(0.02, ...leader.filter((p) => p.x >= 10 || leader.length < 20).map((p) => p.y)) * 1.08);
+  const cut = (q: Point[]): Point[] => q.map((r) => ({ x: r.x, y: Math.min(r.y, top) }));
   const colour = (i: number): string => (i === 0 ? ember : css(`r${[0, 1, 3, 5, 6][i] ?? 6}`));
+  const p = new Plane({ width, height: 190, margin: { left: 40, right: 58, bottom: 24, top: 20 }, x: { domain: [start, Math.max(end, start + 1)], log: true, ticks: decades(start, end), format: count }, y: { domain: [0, top], ticks: 3, format: percent } });
+  p.grid(line).line(cut(leader), { stroke: quiet, width: 1.5, dash: "2 3" });
+  const followed = g.path.followed.map((f) => members.map((x, k) => ({ x, y: f[k]! })).filter((q) => q.x >= start));
+  followed.map((f, i) => ({ f, i })).reverse().forEach(({ f, i }) => p.line(cut(f), { stroke: colour(i), width: i === 0 ? 2.2 : 1.4 }));
+  for (const r of g.reigns.slice(1)) p.upright(r.from, { stroke: ember, width: 2 }, [top * 1.01, top * 1.05]);
   let below = -Infinity; // labels keep a line apart, from the lowest up
-  const labels = rows.filter((r) => r.x === end).sort((a, b) => a.y - b.y).map((r) => ({ ...r, at: (below = Math.max(r.y, below + top * 0.085)) }));
-  return Plot.plot({
-    width, height: 190, style, marginLeft: 40, marginRight: 58, marginBottom: 24, marginTop: 20,
-    x: { type: "log", label: null, domain: [Math.max(2, Math.min(10, g.path.members[0] ?? 2)), end], ticks: decades(2, end), tickFormat: count, line: true },
-    y: { label: null, domain: [0, top], ticks: 3, tickFormat: percent, clamp: true },
-    marks: [
-      Plot.gridY({ stroke: line, ticks: 3 }),
-      Plot.line(leader, { x: "x", y: "y", stroke: quiet, strokeDasharray: "2 3" }),
-      Plot.line(rows, { x: "x", y: "y", z: "i", stroke: (d: { i: number }) => colour(d.i), strokeWidth: (d: { i: number }) => (d.i === 0 ? 2.2 : 1.4), clip: true }),
-      Plot.ruleX(g.reigns.slice(1), { x: "from", y1: top, y2: top * 0.96, stroke: ember, strokeWidth: 2, dy: -5, clip: false }),
-      Plot.text(labels, { x: "x", y: "at", text: "id", dx: 6, textAnchor: "start", fill: (d: { i: number }) => (d.i === 0 ? css("ember-text") : ink) }),
-    ],
-  });
+  const labels = followed.map((f, i) => ({ y: f.at(-1)?.y ?? 0, id: g.ranking[i]?.id ?? "", i })).sort((a, b) => a.y - b.y);
+  for (const l of labels) p.text({ x: end, y: (below = Math.max(l.y, below + top * 0.085)) }, l.id, { dx: 6, fill: l.i === 0 ? emberText : ink });
+  return p.axes();
 }
 
 /** How the shares of an imported log went. */
@@ -159,36 +153,29 @@ export function track(t: { members: number[]; share: number[]; top4: number[] },
   const leader = t.members.map((x, i) => ({ x, y: t.share[i]! }));
   const four = t.members.map((x, i) => ({ x, y: t.top4[i]! }));
   const top = Math.min(1, Math.max(...four.map((p) => p.y)) * 1.06);
-  const end = leader.at(-1);
-  const last = four.at(-1);
-  return Plot.plot({
-    width, height: 170, style, marginLeft: 40, marginRight: 62, marginBottom: 24, marginTop: 10, x: { type: "log", label: null, ticks: decades(t.members[0] ?? 2, t.members.at(-1) ?? 10), tickFormat: count, line: true },
-    y: { label: null, domain: [0, top], ticks: 3, tickFormat: percent, clamp: true },
-    marks: [
-      Plot.gridY({ stroke: line, ticks: 3 }),
-      Plot.line(four, { x: "x", y: "y", stroke: blue, clip: true }),
-      Plot.line(leader, { x: "x", y: "y", stroke: ember, strokeWidth: 2.2, clip: true }),
-      end && Plot.text([end], { x: "x", y: "y", text: ["leader"], dx: 6, textAnchor: "start", fill: css("ember-text"), fontWeight: 600 }),
-      last && Plot.text([last], { x: "x", y: "y", text: ["top four"], dx: 6, textAnchor: "start", fill: ink }),
-    ],
-  });
+  const low = t.members[0] ?? 2, high = t.members.at(-1) ?? 10;
+  const p = new Plane({ width, height: 170, margin: { left: 40, right: 62, bottom: 24, top: 10 }, x: { domain: [low, Math.max(high, low + 1)], log: true, ticks: decades(low, high), format: count }, y: { domain: [0, top], ticks: 3, format: percent } });
+  p.grid(line).line(four, { stroke: blue }).line(leader, { stroke: ember, width: 2.2 });
+  const a = leader.at(-1), b = four.at(-1);
+  if (a) p.text(a, "leader", { dx: 6, fill: emberText, weight: 600 });
+  if (b) p.text(b, "top four", { dx: 6, fill: ink });
+  return p.axes();
 }
 
 /** The leader's share from today to the horizon: 95 and 80 of 100 runs, the middle, the limit. */
 export function fan(o: Outlook, width: number): Element {
   const top = Math.min(1, Math.max(o.past.limit, ...o.bySize.map((b) => b.q975)) * 1.15);
-  return Plot.plot({
-    width, height: 190, style, marginLeft: 40, marginRight: 62, marginBottom: 24, marginTop: 12,
-    x: { label: null, domain: [o.members, o.horizon], ticks: 4, tickFormat: count, line: true }, y: { label: null, domain: [0, top], ticks: 3, tickFormat: percent },
-    marks: [
-      Plot.gridY({ stroke: line, ticks: 3 }),
-      Plot.areaY(o.bySize, { x: "members", y1: "q025", y2: "q975", fill: css("r6"), fillOpacity: 0.35 }),
-      Plot.areaY(o.bySize, { x: "members", y1: "q10", y2: "q90", fill: css("r5"), fillOpacity: 0.45 }),
-      Plot.line(o.bySize, { x: "members", y: "q50", stroke: css("r1"), strokeWidth: 2 }),
-      o.past.limit > 0 ? Plot.ruleY([o.past.limit], { stroke: ink, strokeDasharray: "4 3" }) : null,
-      o.past.limit > 0 ? Plot.text([o.past.limit], { x: o.horizon, y: (d: number) => d, text: (d: number) => `limit ${percent(d)}`, dx: 6, textAnchor: "start", fill: ink }) : null,
-      Plot.dot([{ x: o.members, y: o.today }], { x: "x", y: "y", r: 4.5, fill: ember }),
-      ...(Math.abs(o.leaderShare.q50 - o.past.limit) > top * 0.07 ? [Plot.text([o.bySize.at(-1)], { x: "members", y: "q50", text: ["median"], dx: 6, textAnchor: "start", fill: ink })] : []),
-    ],
-  });
+  const p = new Plane({ width, height: 190, margin: { left: 40, right: 62, bottom: 24, top: 12 }, x: { domain: [o.members, Math.max(o.horizon, o.members + 1)], ticks: 4, format: count }, y: { domain: [0, top], ticks: 3, format: percent } });
+  p.grid(line);
+  p.area(o.bySize.map((b) => ({ x: b.members, low: b.q025, high: b.q975 })), { fill: css("r6"), opacity: 0.35 });
+  p.area(o.bySize.map((b) => ({ x: b.members, low: b.q10, high: b.q90 })), { fill: css("r5"), opacity: 0.45 });
+  p.line(o.bySize.map((b) => ({ x: b.members, y: b.q50 })), { stroke: css("r1"), width: 2 });
+  if (o.past.limit > 0) {
+    p.across(o.past.limit, { stroke: ink, dash: "4 3" });
+    p.text({ x: o.horizon, y: o.past.limit }, `limit ${percent(o.past.limit)}`, { dx: 6, fill: ink });
+  }
+  p.dot({ x: o.members, y: o.today }, 4.5, { fill: ember });
+  const last = o.bySize.at(-1);
+  if (last && Math.abs(o.leaderShare.q50 - o.past.limit) > top * 0.07) p.text({ x: last.members, y: last.q50 }, "median", { dx: 6, fill: ink });
+  return p.axes();
 }

@@ -34,6 +34,31 @@ export function download(name: string, data: BlobPart, type: string): void {
   setTimeout(() => URL.revokeObjectURL(url), 10000);
 }
 
+/** A chart as a file of its own: colours and letters of the page written into it. */
+function standalone(chart: Element, page: Element): { text: string; width: number; height: number } {
+  const looks = getComputedStyle(page);
+  const copy = chart.cloneNode(true) as SVGElement;
+  copy.setAttribute("xmlns", "http://www.w3.org/2000/svg");
+  copy.setAttribute("font-family", looks.fontFamily);
+  copy.setAttribute("color", looks.color);
+  copy.setAttribute("style", `background:${looks.getPropertyValue("--sheet").trim()}`);
+  const text = copy.outerHTML.replace(/var\((--[a-z0-9-]+)\)/g, (_, name: string) => looks.getPropertyValue(name).trim());
+  return { text, width: Number(copy.getAttribute("width")), height: Number(copy.getAttribute("height")) };
+}
+
+const density = 2; // of a saved PNG
+
+async function png(f: { text: string; width: number; height: number }): Promise<Blob> {
+  const image = new Image();
+  image.src = `data:image/svg+xml;charset=utf-8,${encodeURIComponent(f.text)}`;
+  await image.decode();
+  const canvas = document.createElement("canvas");
+  canvas.width = f.width * density;
+  canvas.height = f.height * density;
+  canvas.getContext("2d")?.drawImage(image, 0, 0, canvas.width, canvas.height);
+  return new Promise((resolve, reject) => canvas.toBlob((b) => (b ? resolve(b) : reject(new Error("no picture"))), "image/png"));
+}
+
 export function Figure(p: FigureProps): JSX.Element {
   const ref = useRef<HTMLDivElement>(null);
   const [width, setWidth] = useState(0);
@@ -57,8 +82,7 @@ export function Figure(p: FigureProps): JSX.Element {
       last.current = performance.now();
       const chart = p.draw(width);
       chart?.setAttribute("aria-hidden", "true");
-      if (chart) el.replaceChildren(chart);
-      else el.replaceChildren();
+      el.replaceChildren(...(chart ? [chart] : []));
     };
     const wait = last.current + (p.every ?? 0) - performance.now();
     if (wait <= 0) {
@@ -68,12 +92,17 @@ export function Figure(p: FigureProps): JSX.Element {
     const later = window.setTimeout(draw, wait);
     return () => clearTimeout(later);
   }, [width, near, ...p.of]);
-  const save = (): void => {
-    const chart = p.draw(width || 440)?.querySelector("svg") ?? ref.current?.querySelector("svg");
-    if (!chart) return;
-    const copy = chart.cloneNode(true) as SVGElement;
-    copy.setAttribute("xmlns", "http://www.w3.org/2000/svg");
-    download(`${p.name}.svg`, copy.outerHTML, "image/svg+xml");
+  const file = (): { text: string; width: number; height: number } | undefined => {
+    const chart = p.draw(width || 440);
+    return chart && ref.current ? standalone(chart, ref.current) : undefined;
+  };
+  const saveSVG = (): void => {
+    const f = file();
+    if (f) download(`${p.name}.svg`, f.text, "image/svg+xml");
+  };
+  const savePNG = (): void => {
+    const f = file();
+    if (f) void png(f).then((b) => download(`${p.name}.png`, b, "image/png"));
   };
   const table = open ? p.table() : undefined;
   return (
@@ -88,7 +117,8 @@ export function Figure(p: FigureProps): JSX.Element {
         <p class="caption">{p.summary}</p>
         <div class="buttons">
           <button type="button" onClick={() => download(`${p.name}.csv`, csv(p.table()), "text/csv")}>Save as CSV</button>
-          <button type="button" onClick={save}>Save as SVG</button>
+          <button type="button" onClick={saveSVG}>Save as SVG</button>
+          <button type="button" onClick={savePNG}>Save as PNG</button>
         </div>
         {table && (
           <div class="scroll" tabIndex={0} role="region" aria-label={`Values of ${p.title}`}>

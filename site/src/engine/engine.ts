@@ -118,7 +118,8 @@ export class Engine {
     });
   }
 
-  /** Like ask, but of one kind only one request runs and one waits; a newer one takes the place of the one waiting. */
+  /** Like ask, but of one kind only one request runs and one waits; a newer one takes the place of the one waiting. A body
+   * that is a function is called when its turn comes. */
   async askNewest<T>(kind: string, body: unknown, options: AskOptions = {}): Promise<Reply<T> | undefined> {
     let slot = this.newest.get(kind);
     if (!slot) this.newest.set(kind, (slot = { running: false }));
@@ -134,7 +135,7 @@ export class Engine {
     }
     mine.running = true;
     try {
-      return await this.ask<T>(kind, body, options);
+      return await this.ask<T>(kind, typeof body === "function" ? (body as () => unknown)() : body, options);
     } finally {
       mine.running = false;
       mine.then?.();

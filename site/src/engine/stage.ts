@@ -71,6 +71,7 @@ export class Stage {
   private settings: string | undefined;
   private network: Uint8Array<ArrayBuffer> | undefined;
   private rebuilds = 0;
+  private unseen = false; // a picture was drawn since the last frame
   private refused = false; // no drawing context is to be had
 
   constructor(
@@ -115,11 +116,12 @@ export class Stage {
     if (this.frame === frame) this.lost();
   }
 
-  /** No multisampling, frames only when asked for, and a lost context is ours to handle. */
+  /** Colour only (the picture is opaque, and nothing else is drawn), frames only when asked for, and a lost context is ours
+   * to handle. */
   private tame(w: StageWindow): void {
     const context = w.HTMLCanvasElement.prototype.getContext as (type: string, a?: object) => RenderingContext | null;
     w.HTMLCanvasElement.prototype.getContext = function (this: HTMLCanvasElement, type: string, a?: object) {
-      const got = context.call(this, type, { ...a, antialias: false });
+      const got = context.call(this, type, { ...a, antialias: false, alpha: false, stencil: false, depth: false });
       if (!got && type === "webgl2") refuse();
       return got;
     } as typeof w.HTMLCanvasElement.prototype.getContext;
@@ -178,7 +180,14 @@ export class Stage {
     const w = this.window;
     if (!w?.stage) return;
     w.stage.load(new w.Uint8Array(bytes.buffer, bytes.byteOffset, bytes.byteLength));
-    this.drawNow(); // before the charts: the picture is what is looked at while something is dragged
+    // Before the charts, since the picture is what is looked at while something is dragged; but one picture a frame.
+    if (this.unseen) {
+      this.wake();
+      return;
+    }
+    this.drawNow();
+    this.unseen = true;
+    requestAnimationFrame(() => (this.unseen = false));
   }
 
   set(s: StageSettings): void {
@@ -187,6 +196,12 @@ export class Stage {
     this.settings = json;
     this.window?.stage?.set(json);
     this.wake();
+  }
+
+  /** The size of the picture in pixels, as the stage itself takes it. */
+  size(): { width: number; height: number; scale: number } {
+    const scale = devicePixelRatio;
+    return { width: Math.floor(this.host.clientWidth * scale), height: Math.floor(this.host.clientHeight * scale), scale };
   }
 
   pick(x: number, y: number): number {

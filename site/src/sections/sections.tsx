@@ -44,7 +44,7 @@ export function LawSection(p: { entry: Entry }): JSX.Element | null {
     <Section id="law" title="Fitness law" aside={family?.formula ?? (law.family === "evidence" ? "read from the log" : "discrete levels")}>
       {s?.curves && (
         <Figure
-          title="Density of energies p(ε)" name="law" class="plain" every={quick.value ? 200 : 0}
+          title="Density of energies p(ε)" name="law" class="plain"
           summary={`Energies from ${number(mean?.[0] ?? 0)} to ${number(mean?.at(-1) ?? 0)}; the fittest have energy 0. ${leader ? `The leader ${leader.id} has energy ${number(leader.energy)}.` : ""}`}
           of={[s.curves, leader?.id, leader?.energy, held.value]} draw={(w) => density(s.curves!, leader, held.value?.curves, w)}
           table={() => ({ columns: ["energy", "density"], rows: s.curves!.eps.map((e, i) => [e, s.curves!.density[i] ?? 0]) })}
@@ -134,7 +134,7 @@ export function SharesSection(): JSX.Element {
         <>
           {g.from > 1 && <p class="caption">This entry begins with the network the log left, at {count(g.from)} members; how its shares went before stands under Evidence.</p>}
           {g.path.members.length > 3 && <Figure
-            title="Share of all links" name="shares" class="plain" summary={`${g.leader.id} leads with ${percent(g.leader.share)} at ${count(g.members)} members; ${g.leadChanges} lead changes that lasted.`}
+            title="Share of all links" name="shares" class="plain" every={quick.value ? 200 : 0} summary={`${g.leader.id} leads with ${percent(g.leader.share)} at ${count(g.members)} members; ${g.leadChanges} lead changes that lasted.`}
             of={[g]} draw={(w) => shares(g, w)}
             table={() => ({ columns: ["members", "leader's share", "top four", "HHI", ...g.ranking.slice(0, g.path.followed.length).map((r) => r.id)], rows: g.path.members.map((n, i) => [n, g.path.share[i] ?? 0, g.path.top4[i] ?? 0, g.path.hhi[i] ?? 0, ...g.path.followed.map((f) => f[i] ?? 0)]) })}
             note="Dashed: whoever leads. Marks at the top: the lead changed for good (for 5 % of growth at least)."

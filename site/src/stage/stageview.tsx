@@ -5,8 +5,8 @@ import { useEffect, useRef } from "preact/hooks";
 import { Stage, type StageSettings } from "../engine/stage";
 import { column } from "../engine/wire";
 import { current } from "../state/document";
-import { network } from "../state/edges";
-import { engines, grown, solved } from "../state/results";
+import { network, paintFor } from "../state/edges";
+import { engines, grown, sentenceOf, solved } from "../state/results";
 import type { MemberReport } from "../state/types";
 import { arrival, follow, hover, memberReport, playing, projector, quick, said, shown, speed, stageFault, still, theme, zoom } from "../state/view";
 import { count, number, percent } from "../words/format";
@@ -25,6 +25,14 @@ const settings = (): StageSettings => ({
   ceiling: current.value?.entry.growth.ceiling ?? 0, follow: follow.value, hover: hover.value, quick: quick.value, playing: playing.value, still: still.value, small: innerWidth < 600, label: projector.value ? 1.65 : 1,
 });
 
+/** The present view, for an engine to paint while something is dragged. */
+function paintedView(): Record<string, unknown> | undefined {
+  const g = grown.peek()?.value;
+  if (!stage || !drawn.peek() || !g) return undefined;
+  const s = settings();
+  return { ...stage.size(), members: s.members >= g.members ? 0 : s.members, arrival: s.arrival ? 1 : 0, theme: s.theme, zoom: s.zoom, panX: s.panX, panY: s.panY, ceiling: s.ceiling, following: s.follow, label: s.label };
+}
+
 export const nameOf = (member: number): string => grown.value?.value.ranking.find((r) => r.member === member)?.id ?? `M${member}`;
 
 /** The network without a stage: a picture painted by the engine, put on a canvas. */
@@ -35,14 +43,14 @@ function stillPicture(canvas: HTMLCanvasElement, painted: () => void): () => voi
     const scale = Math.min(2, devicePixelRatio);
     const width = Math.round(canvas.clientWidth * scale), height = Math.round(canvas.clientHeight * scale);
     if (width < 2 || height < 2) return;
-    void engines.main.askNewest("picture", { width, height, scale, members: s.members, arrival: s.arrival, theme: s.theme, ceiling: s.ceiling, strokes: 4000, following: s.follow, zoom: s.zoom }).then((r) => {
+    void engines.main.askNewest("picture", { width, height, scale, members: s.members, arrival: s.arrival ? 1 : 0, theme: s.theme, ceiling: s.ceiling, strokes: 4000, following: s.follow, zoom: s.zoom }).then((r) => {
       const rgba = r && column<Uint8Array<ArrayBuffer>>(r, "rgba");
       if (!rgba) return;
       canvas.width = width;
       canvas.height = height;
       canvas.getContext("2d")?.putImageData(new ImageData(new Uint8ClampedArray(rgba), width, height), 0, 0);
       painted();
-    }, () => {});
+    }, (e: unknown) => { stageFault.value = sentenceOf(e); });
   });
 }
 
@@ -66,11 +74,13 @@ function useStage(source: StageSource): { host: { current: HTMLDivElement | null
         ready: () => (stageFault.value = undefined),
         lost: (sentence) => {
           stageFault.value = sentence;
+          paintFor(() => undefined);
           drawn.value = false;
           stop();
           stop = stillPicture(canvas.current!, () => {});
         },
       });
+      paintFor(paintedView);
       stops.push(effect(() => { if (network.value) stage?.load(network.value); }), effect(() => stage?.set(settings())));
     };
     stop = stillPicture(canvas.current!, () => setTimeout(begin, 60));

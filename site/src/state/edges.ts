@@ -6,11 +6,13 @@ import { current, doc, isDragging, projection, say, tables } from "./document";
 import { engines, digests, fault, grown, growing, outlookFault, outlooks, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
 import { keep, kept } from "./storage";
 import type { Casebook, Entry, Grown, Outlook, Solved } from "./types";
-import { follow, said, shown, theme } from "./view";
+import { follow, quick, said, shown, theme } from "./view";
 import { percent, count } from "../words/format";
 
 /** Larger networks are grown only when asked for. */
 const unasked = 1_000_000;
+/** Up to this size the engine that grows a network while something is dragged paints it too. */
+const painted = 100_000;
 
 /** The bytes of the network on show, for the stage. */
 export const network = signal<Uint8Array<ArrayBuffer> | undefined>(undefined);
@@ -23,6 +25,11 @@ function numberOf(e: object): number {
   numbers.set(e, known);
   return known;
 }
+
+/** What the stage shows, for an engine to paint; undefined while there is no stage. */
+export type StageView = () => Record<string, unknown> | undefined;
+let stageView: StageView = () => undefined;
+export const paintFor = (view: StageView): void => { stageView = view; };
 
 /** The question the open entry asks, as text: equal text, equal answer. */
 export function keyOf(book: Casebook): string {
@@ -37,20 +44,43 @@ function report(e: unknown): void {
 async function askSolve(book: Casebook, key: string): Promise<void> {
   try {
     const r = await engines.side.askNewest<Solved>("solve", { casebook: book, entry: 0, curves: true });
-    if (r) batch(() => { solved.value = { key, value: r.body }; fault.value = undefined; });
+    if (r) takeSolved(r, key);
   } catch (e) {
     report(e);
   }
 }
 
+/** While something is dragged a solution waits a moment for its network, so that each chart is drawn once for both. */
+const patience = 60;
+let early: { solution: () => void; timer: number } | undefined;
+
+function takeSolved(r: Reply<Solved>, key: string): void {
+  const solution = (): void => batch(() => { solved.value = { key, value: r.body }; fault.value = undefined; });
+  if (early) clearTimeout(early.timer);
+  early = undefined;
+  if (quick.peek()) early = { solution, timer: window.setTimeout(takeEarly, patience) };
+  else solution();
+}
+
+function takeEarly(): void {
+  if (early) clearTimeout(early.timer);
+  early?.solution();
+  early = undefined;
+}
+
 let growth: AbortController | undefined;
+let growthSince = 0;
+/** How long a growth may still run when a newer one is asked for: short ones end, so that a drag shows every step. */
+const grace = 250;
 
 async function askGrow(book: Casebook, key: string): Promise<void> {
   const before = grown.peek();
-  growth?.abort();
+  const older = growth;
+  if (older) setTimeout(() => older.abort(), Math.max(0, growthSince + grace - performance.now()));
+  else growthSince = performance.now();
   const mine = (growth = new AbortController());
   try {
-    const r = await engines.main.askNewest<Grown>("grow", { casebook: book, entry: 0, columns: true }, {
+    const r = await engines.main.askNewest<Grown>("grow", () => ({ casebook: book, entry: 0, columns: true, view: quick.peek() && book.entries[0]!.growth.members <= painted ? stageView() : undefined }), {
       signal: mine.signal,
       progress: (p) => { if (p.seconds > 0.3) growing.value = { done: p.done, what: p.what }; },
     });
@@ -58,7 +88,11 @@ async function askGrow(book: Casebook, key: string): Promise<void> {
   } catch (e) {
     report(e);
   } finally {
-    if (growth === mine) growing.value = undefined;
+    growthSince = performance.now(); // when the one that waited, if any, began
+    if (growth === mine) {
+      growth = undefined;
+      growing.value = undefined;
+    }
   }
 }
 
@@ -68,6 +102,7 @@ export function cancelGrowth(): void {
 
 function takeGrown(r: Reply<Grown>, key: string, before: Grown | undefined): void {
   batch(() => {
+    takeEarly();
     // A scrubber that stood at the end stays at the end.
     const atEnd = !before || shown.peek() >= before.members;
     grown.value = { key, value: r.body };

@@ -138,7 +138,7 @@ export interface Curves {
   pull: number[] | null;
   beta: number[] | null;
   betaMuOver: number[] | null;
-  levels: { eps: number; weight: number }[];
+  levels: { eps: number; weight: number; pull: number | null }[];
 }
 
 export interface Solved {
