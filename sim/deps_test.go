@@ -14,8 +14,9 @@ const allowed = `
 sim/internal/exact      <-
 sim/internal/root       <-
 sim/internal/near       <-
-sim/law                 <- sim/internal/exact
-sim/bose                <- sim/internal/root sim/law
+sim/internal/gauss      <-
+sim/law                 <- sim/internal/exact sim/internal/gauss
+sim/bose                <- sim/internal/gauss sim/internal/root sim/law
 sim/growth              <- sim/internal/exact sim/law
 sim/share               <-
 sim/standing            <- sim/bose

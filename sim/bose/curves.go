@@ -13,7 +13,7 @@ type Curves struct {
 }
 
 // curvePoints over energies, muPoints over sharpness.
-const curvePoints, muPoints = 160, 56
+const curvePoints, muPoints = 400, 56
 
 // CurvesOf returns the curves of any law; one without a ground level has a density only.
 func CurvesOf(l law.Law, beta float64, rule Rule, sol Solution) Curves {
@@ -53,19 +53,21 @@ func (s *Spectrum) Curves(beta float64, rule Rule, sol Solution) Curves {
 	if r == 0 {
 		return c // every link is dealt to anyone: there is no potential
 	}
-	start, mu := math.NaN(), 0.0
+	if !s.leveled() {
+		s = newSpectrum(s.law, coarse)
+	}
+	var past [3]float64 // ln(-beta mu) at the last three points, newest first: the next is guessed from them
 	for i := 1; i <= muPoints; i++ {
 		b := top * float64(i) / muPoints
+		mu := 0.0
 		switch {
 		case b >= sol.CriticalSharpness:
-			mu = 0
-		case i == 1:
+		case i <= 3:
 			mu, _ = s.Mu(b, r)
 		default:
-			mu, _ = s.mu(b, r, start, drawnMu)
+			mu, _ = s.mu(b, r, 3*(past[0]-past[1])+past[2]-math.Log(b), drawnMu)
 		}
-		// beta mu moves little from point to point while mu itself falls like 1/beta at first.
-		start = math.Log(-mu) + math.Log(float64(i)/float64(i+1))
+		past = [3]float64{math.Log(-b * mu), past[0], past[1]}
 		c.Beta, c.Mu = append(c.Beta, b), append(c.Mu, b*mu)
 	}
 	return c

@@ -3,32 +3,56 @@ package bose
 
 import (
 	"math"
+	"sort"
 
+	"gonum.org/v1/gonum/integrate/quad"
+
+	"preponder/sim/internal/gauss"
 	"preponder/sim/law"
 )
 
-// gauss16 are the positive nodes and weights of the 16-point Gauss-Legendre rule (Abramowitz & Stegun table 25.4).
-var gauss16 = [8][2]float64{
-	{0.095012509837637440185, 0.189450610455068496285}, {0.281603550779258913230, 0.182603415044923588867},
-	{0.458016777657227386342, 0.169156519395002538189}, {0.617876244402643748447, 0.149595988816576732081},
-	{0.755404408355003033895, 0.124628971255533872052}, {0.865631202387831743880, 0.095158511682492784810},
-	{0.944575023073232576078, 0.062253523938647892863}, {0.989400934991649932596, 0.027152459411754094852}}
-
 // A Spectrum is a law cut into nodes in ln eps, so that one sum gives any of its integrals for every sharpness and
 // chemical potential. Panels are so short in ln eps that the nearest pole of 1/(exp(beta(eps-mu))-1), at distance pi in
-// ln eps, costs less than 1e-15; what lies below the lowest node is added in closed form from the edge of the law.
+// ln eps, costs less than 1e-15; they end at the knots of a law in pieces; what lies below the lowest node is added in
+// closed form from the edge of the law.
 type Spectrum struct {
 	law       law.Law
 	edge      law.Edge
 	lowest    float64 // nodes begin at ln eps = lowest
 	top       float64 // and end at ln eps = top
 	width     float64 // of a panel
+	unit      float64 // factor on every mass
+	base      float64 // the edge alone is right below here
+	rule      rule
+	panels    []bound   // from the top down
+	knots     []float64 // in ln eps, ascending, those not reached yet
 	eps, mass []float64
 }
 
+// A bound is where a panel ends: ln eps, and the nodes above it.
+type bound struct {
+	low   float64
+	nodes int
+}
+
+// A rule is nodes and weights on [-1, 1].
+type rule struct{ nodes, weights []float64 }
+
+// fine is for figures; coarse, right to about 1e-8, for lines that are drawn.
+var (
+	fine   = rule{gauss.Nodes[:], gauss.Weights[:]}
+	coarse = func() rule { // 8 points
+		r := rule{make([]float64, 8), make([]float64, 8)}
+		quad.Legendre{}.FixedLocations(r.nodes, r.weights, -1, 1)
+		return r
+	}()
+)
+
 // NewSpectrum prepares a law with a ground level.
-func NewSpectrum(l law.Law) *Spectrum {
-	s := &Spectrum{law: l, edge: l.Edge()}
+func NewSpectrum(l law.Law) *Spectrum { return newSpectrum(l, fine) }
+
+func newSpectrum(l law.Law, r rule) *Spectrum {
+	s := &Spectrum{law: l, edge: l.Edge(), rule: r, unit: 1}
 	if levels, ok := l.(law.Leveled); ok {
 		s.eps, s.mass = levels.Levels()
 		return s
@@ -41,9 +65,27 @@ func NewSpectrum(l law.Law) *Spectrum {
 		}
 	}
 	s.top = math.Log(high)
-	s.width = math.Min(1, 6/(1+math.Max(s.edge.Theta, 0)))
+	s.width = math.Min(1.4, 8/(1+math.Max(s.edge.Theta, 0)))
 	s.lowest = s.top
-	s.reach(s.top - 40)
+	if pieced, ok := l.(law.Pieced); ok {
+		for _, k := range pieced.Knots() {
+			if x := math.Log(k); k > 0 && x < s.top {
+				s.knots = append(s.knots, x)
+			}
+		}
+		sort.Float64s(s.knots)
+	}
+	s.base = s.top - 40
+	if s.edge.Below > 0 {
+		s.base = math.Min(s.base, math.Log(s.edge.Below))
+	}
+	s.reach(s.base)
+	// The nodes hold all of the law: what their masses miss of 1 is rounding that all of them share.
+	s.unit = 1 / s.Mean(func(float64) float64 { return 1 })
+	for i := range s.mass {
+		s.mass[i] *= s.unit
+	}
+	s.edge.Scale *= s.unit
 	return s
 }
 
@@ -55,17 +97,38 @@ func (s *Spectrum) reach(to float64) {
 		return
 	}
 	for s.lowest > to {
-		center, half := s.lowest-s.width/2, s.width/2
-		for _, g := range gauss16 {
-			for _, x := range [2]float64{center + half*g[0], center - half*g[0]} {
-				e := math.Exp(x)
-				if d := s.law.Density(e); d > 0 {
-					s.eps = append(s.eps, e)
-					s.mass = append(s.mass, half*g[1]*d*e)
-				}
-			}
+		end := s.lowest - s.width
+		for n := len(s.knots); n > 0 && s.knots[n-1] >= s.lowest; n-- {
+			s.knots = s.knots[:n-1]
 		}
-		s.lowest -= s.width
+		if n := len(s.knots); n > 0 && s.knots[n-1] > end {
+			end = s.knots[n-1]
+		}
+		s.panel(end)
+		s.lowest = end
+		s.panels = append(s.panels, bound{end, len(s.eps)})
+	}
+}
+
+// narrow panels lie around kinks: one node tells their mass and place.
+const narrow = 1e-6
+
+// panel adds the nodes between ln eps = low and the lowest so far.
+func (s *Spectrum) panel(low float64) {
+	center, half := (s.lowest+low)/2, (s.lowest-low)/2
+	add := func(x, weight float64) {
+		e := math.Exp(x)
+		if d := s.law.Density(e); d > 0 {
+			s.eps = append(s.eps, e)
+			s.mass = append(s.mass, half*weight*d*e*s.unit)
+		}
+	}
+	if half < narrow {
+		add(center, 2)
+		return
+	}
+	for i, x := range s.rule.nodes {
+		add(center+half*x, s.rule.weights[i])
 	}
 }
 
@@ -87,52 +150,113 @@ func (s *Spectrum) GroundIntegral(beta, mu float64) float64 {
 		panic("bose: at sharpness 0 only beta*mu has a meaning")
 	}
 	if s.leveled() {
-		sum := 0.0
-		for i, e := range s.eps {
-			sum += s.mass[i] / math.Expm1(beta*(e-mu))
+		if mu == 0 {
+			return math.Inf(1) // the atom at the ground level
 		}
-		return sum
+		return s.sum(beta, mu, len(s.eps))
 	}
 	theta := s.edge.Theta
 	if mu == 0 && theta <= 0 {
 		return math.Inf(1)
 	}
+	b := s.upTo(beta, mu)
+	sum := s.sum(beta, mu, b.nodes)
+	if mu == 0 {
+		return sum + s.edge.Scale*math.Exp(theta*b.low)/(beta*theta)
+	}
+	return sum + s.edge.Scale*math.Exp((theta+1)*b.low)/(theta+1)/math.Expm1(-beta*mu)
+}
+
+// upTo returns the panel down to which nodes are needed: far below every scale of the integrand.
+func (s *Spectrum) upTo(beta, mu float64) bound {
+	if s.leveled() {
+		return bound{nodes: len(s.eps)}
+	}
 	scale := math.Min(-math.Log(beta), s.top)
 	if mu < 0 {
 		scale = math.Min(scale, math.Log(-mu))
 	}
-	s.reach(scale - groundReach)
-	sum := 0.0
-	for i, e := range s.eps {
-		sum += s.mass[i] / math.Expm1(beta*(e-mu))
+	to := math.Min(scale-groundReach, s.base)
+	s.reach(to)
+	return s.panels[sort.Search(len(s.panels), func(i int) bool { return s.panels[i].low <= to })]
+}
+
+// sum returns the sum over the first n nodes.
+func (s *Spectrum) sum(beta, mu float64, n int) float64 {
+	var t total
+	for i, e := range s.eps[:n] {
+		t.add(i, s.mass[i]/math.Expm1(beta*(e-mu)))
 	}
-	if mu == 0 {
-		return sum + s.edge.Scale*math.Exp(theta*s.lowest)/(beta*theta)
+	return t.value()
+}
+
+// A total adds up blocks of terms, and the blocks by Neumaier's compensated summation: the last digits decide mu near the
+// transition.
+type total struct{ block, sum, rest float64 }
+
+func (t *total) add(i int, v float64) {
+	t.block += v
+	if i&15 == 15 {
+		t.close()
 	}
-	return sum + s.edge.Scale*math.Exp((theta+1)*s.lowest)/(theta+1)/math.Expm1(-beta*mu)
+}
+
+func (t *total) close() {
+	v := t.sum + t.block
+	if math.Abs(t.sum) >= math.Abs(t.block) {
+		t.rest += (t.sum - v) + t.block
+	} else {
+		t.rest += (t.block - v) + t.sum
+	}
+	t.sum, t.block = v, 0
+}
+
+func (t *total) value() float64 {
+	t.close()
+	return t.sum + t.rest
 }
 
 // integralAndSlope returns I and its derivative with respect to ln(-mu), mu < 0; the slope is always negative.
 func (s *Spectrum) integralAndSlope(beta, mu float64) (i, slope float64) {
-	if !s.leveled() {
-		s.reach(math.Min(math.Min(-math.Log(beta), s.top), math.Log(-mu)) - groundReach)
-	}
-	add := func(mass, x float64) {
+	b := s.upTo(beta, mu)
+	var t total
+	add := func(k int, mass, x float64) {
 		if x > 700 {
 			return
 		}
 		u := math.Expm1(x)
 		n := mass / u
-		i += n
+		t.add(k, n)
 		slope += n * (u + 1) / u
 	}
-	for k, e := range s.eps {
-		add(s.mass[k], beta*(e-mu))
+	for k, e := range s.eps[:b.nodes] {
+		add(k, s.mass[k], beta*(e-mu))
 	}
 	if !s.leveled() {
-		add(s.edge.Scale*math.Exp((s.edge.Theta+1)*s.lowest)/(s.edge.Theta+1), -beta*mu)
+		add(15, s.edge.Scale*math.Exp((s.edge.Theta+1)*b.low)/(s.edge.Theta+1), -beta*mu)
 	}
-	return i, beta * mu * slope
+	return t.value(), beta * mu * slope
+}
+
+// slopes returns dI/dlnbeta and dI/dbmu at fixed beta mu = bmu < 0, or at bmu = 0 where it is finite:
+//
+//	-∫ p x n (n+1),   ∫ p n (n+1),   x = beta eps, n = 1/(exp(x - bmu) - 1).
+func (s *Spectrum) slopes(beta, bmu float64) (byBeta, byMu float64) {
+	for k, e := range s.eps {
+		x := beta * e
+		if x-bmu > 700 {
+			continue
+		}
+		u := math.Expm1(x - bmu)
+		w := s.mass[k] / u * (u + 1) / u
+		byBeta -= w * x
+		byMu += w
+	}
+	if !s.leveled() && bmu < 0 {
+		u := math.Expm1(-bmu)
+		byMu += s.edge.Scale * math.Exp((s.edge.Theta+1)*s.lowest) / (s.edge.Theta + 1) / u * (u + 1) / u
+	}
+	return byBeta, byMu
 }
 
 // Mean returns E[g(eps)] over the law.

@@ -47,10 +47,18 @@ type Solution struct {
 	DissolveHeadStart float64 // head start that alone dissolves a condensate; NaN elsewhere
 	DissolveOpenShare float64 // open share that alone dissolves it; NaN elsewhere
 	MeanFitness       float64 // E[exp(-beta eps)]
+	DegreeExponent    float64 // P(k) ~ k^-DegreeExponent, up to logarithms, = 1 + 1/f(0); NaN in records
+	BetaMuSlope       float64 // d(beta mu)/d ln beta
+	MuSlope           float64 // d mu/d beta; 0 in a condensate
+	Errors            Errors
 }
 
+// Errors are estimates of relative errors: of rounding, of what is unsure about the edge of the law, and of how far the
+// equation carries them.
+type Errors struct{ GroundIntegral, Mu, CriticalSharpness float64 }
+
 // betaLow and betaHigh bound the search for a critical sharpness.
-const betaLow, betaHigh = 1e-6, 1e6
+const betaLow, betaHigh = 1e-30, 1e6
 
 // muLeast is the smallest -mu the solver distinguishes from 0.
 const muLeast = 1e-300
@@ -80,7 +88,7 @@ func Solve(l law.Law, beta float64, rule Rule) (Solution, error) {
 		return s, nil
 	}
 	if math.IsInf(low, -1) {
-		s.Regime, s.BetaMu, s.GroundIntegral, s.Margin, s.LeaderExponent, s.Halving, s.MeanFitness = Records, nan, nan, nan, nan, nan, nan
+		s.Regime, s.BetaMu, s.GroundIntegral, s.Margin, s.LeaderExponent, s.Halving, s.MeanFitness, s.DegreeExponent = Records, nan, nan, nan, nan, nan, nan, nan
 		return s, nil
 	}
 	return NewSpectrum(l).Solve(beta, rule)
@@ -103,6 +111,8 @@ func (s *Spectrum) Solve(beta float64, rule Rule) (Solution, error) {
 	out.Margin = out.GroundIntegral / r
 	out.CriticalSharpness = s.Critical(r)
 	out.MeanFitness = s.Mean(func(e float64) float64 { return math.Exp(-beta * e) })
+	rounding := s.rounding(beta, out.GroundIntegral)
+	out.Errors = Errors{rounding, 0, rounding} // d ln I/d ln beta is -1 or steeper
 	if out.GroundIntegral < r {
 		i := out.GroundIntegral
 		out.Regime = Condensate
@@ -119,17 +129,34 @@ func (s *Spectrum) Solve(beta float64, rule Rule) (Solution, error) {
 	}
 	out.Mu, out.BetaMu = mu, beta*mu
 	out.lead(math.Exp(out.BetaMu))
+	byBeta, byMu := s.slopes(beta, out.BetaMu)
+	out.BetaMuSlope = -byBeta / byMu
+	out.MuSlope = (out.BetaMuSlope - out.BetaMu) / (beta * beta)
+	out.Errors.Mu = 1e-14 + rounding*r/(-out.BetaMu*byMu)
 	return out, nil
+}
+
+// rounding estimates the relative error of the ground integral: of summation, and of an edge exponent found numerically.
+func (s *Spectrum) rounding(beta, integral float64) float64 {
+	const summation = 2e-15
+	uncertain, ok := s.law.(interface{ EdgeUncertainty() float64 })
+	if !ok || s.edge.Below == 0 || math.IsInf(integral, 1) || s.edge.Theta <= 0 {
+		return summation
+	}
+	under := s.edge.Scale * math.Pow(s.edge.Below, s.edge.Theta) / (beta * s.edge.Theta)
+	return summation + uncertain.EdgeUncertainty()*under/integral*(1/s.edge.Theta+groundReach)
 }
 
 // lead fills in what follows from the leader's dynamic exponent f(0).
 func (s *Solution) lead(f float64) {
 	s.LeaderExponent = f - 1
+	s.DegreeExponent = 1 + 1/f
 	s.Halving = math.Pow(2, 1/(1-f))
 }
 
-// exact and drawn are the relative steps in ln(-mu) at which the search for mu ends: for figures, and for curves.
-const exactMu, drawnMu = 1e-14, 1e-6
+// exactMu and drawnMu are the last steps in ln(-mu) of the search for mu: for figures, and for curves. The error after a
+// step is about its square.
+const exactMu, drawnMu = 1e-14, 1e-3
 
 // Mu returns the chemical potential: I(beta, mu) = r, for 0 < r <= I(beta, 0). Newton's method in ln(-mu), kept inside a
 // bracket: -ln(1 + 1/r)/beta is at or below the root, because every energy is >= 0. A root nearer to 0 than 1e-300 is
@@ -140,12 +167,9 @@ func (s *Spectrum) Mu(beta, r float64) (float64, error) {
 
 // mu searches from ln(-mu) = start until a step is smaller than tol.
 func (s *Spectrum) mu(beta, r, start, tol float64) (float64, error) {
-	low, high := math.Log(muLeast), math.Log(math.Log1p(1/r)/beta)
-	if start < -600 || s.edge.Theta < 0.01 {
-		if s.GroundIntegral(beta, -muLeast) <= r {
-			return -muLeast, nil
-		}
-	}
+	least := math.Log(muLeast)
+	low, high := least, math.Log(math.Log1p(1/r)/beta)
+	ground := s.GroundIntegral(beta, 0)
 	y := math.Max(low, math.Min(start, high))
 	for range 200 {
 		i, slope := s.integralAndSlope(beta, -math.Exp(y))
@@ -154,15 +178,20 @@ func (s *Spectrum) mu(beta, r, start, tol float64) (float64, error) {
 		} else {
 			high = y
 		}
-		// ln I is nearly straight in ln(-mu), so the step is taken there.
+		// ln I is nearly straight in ln(-mu); near the transition ln(I(0) - I) is.
 		next := y - math.Log(i/r)*i/slope
+		if r > 0.7*ground && i < ground {
+			next = y - math.Log((ground-r)/(ground-i))*(ground-i)/slope
+		}
+		if next <= least && low == least {
+			if s.GroundIntegral(beta, -muLeast) <= r {
+				return -muLeast, nil
+			}
+		}
 		if !(next > low && next < high) {
 			next = (low + high) / 2
 		}
 		if math.Abs(next-y) < tol*math.Max(1, math.Abs(y)) || high-low < tol {
-			if next <= math.Log(muLeast)+1e-9 {
-				return -muLeast, nil
-			}
 			return -math.Exp(next), nil
 		}
 		y = next
@@ -170,8 +199,8 @@ func (s *Spectrum) mu(beta, r, start, tol float64) (float64, error) {
 	return -math.Exp(y), root.ErrNoConvergence
 }
 
-// Critical returns the sharpness at which a condensate begins, I(beta, 0) = r, or NaN where the law allows none in
-// [1e-6, 1e6]. Unique for laws whose edge exponent is positive, since I falls with beta.
+// Critical returns the sharpness at which a condensate begins, I(beta, 0) = r, or NaN where the law allows none up to 1e6.
+// There is never more than one: d ln I/d ln beta = -∫ p x n (n+1)/∫ p n <= -1, since x (n+1) = x/(1 - exp(-x)) >= 1.
 func (s *Spectrum) Critical(r float64) float64 {
 	if s.leveled() || s.edge.Theta <= 0 {
 		return math.NaN()

@@ -149,6 +149,73 @@ func TestIdentities(t *testing.T) {
 	}
 }
 
+func TestSlopesAndScale(t *testing.T) {
+	for _, l := range []law.Law{law.Power{Theta: 1}, law.Beta{A: 2, B: 1.4}, law.Uniform{}, twoHumps(t), law.NewTiers([]float64{0, .5, 2}, []float64{.1, .3, .6})} {
+		const beta, h = 0.9, 1e-4
+		at := func(l law.Law, b float64) Solution {
+			s, err := Solve(l, b, Rule{Links: 2, HeadStart: .5})
+			if err != nil {
+				t.Fatal(err)
+			}
+			return s
+		}
+		s := at(l, beta)
+		near.Rel(t, "d mu/d beta", s.MuSlope, (at(l, beta+h).Mu-at(l, beta-h).Mu)/(2*h), 1e-5)
+		near.Rel(t, "degree exponent", s.DegreeExponent, 1+math.Exp(-s.BetaMu), 1e-14)
+		if _, leveled := l.(law.Leveled); !leveled { // energies three times as far apart at a third of the sharpness are the same network
+			u := at(law.Scaled{Law: l, By: 3}, beta/3)
+			near.Rel(t, "scaled beta mu", u.BetaMu, s.BetaMu, 1e-11)
+			near.Rel(t, "scaled mean fitness", u.MeanFitness, s.MeanFitness, 1e-11)
+		}
+		// The links all levels hold are those that newcomers bring, and I falls as mu falls.
+		sp := NewSpectrum(l)
+		near.Rel(t, "sum of p n", sp.Mean(func(e float64) float64 { return Occupation(beta*e, s.BetaMu) }), s.Balance, 1e-10)
+		before := math.Inf(1)
+		for _, mu := range []float64{-1e-9, -1e-3, -.1, -1, -10} {
+			if i := sp.GroundIntegral(beta, mu); i >= before {
+				t.Errorf("%#v: I(%g) = %g does not fall", l, mu, i)
+			} else {
+				before = i
+			}
+		}
+	}
+	// Uniform fitness: P(k) ~ k^-2.255/ln k (Bianconi & Barabasi 2001).
+	s, _ := Solve(law.Uniform{}, 1, plain)
+	near.Rel(t, "degree exponent", s.DegreeExponent, 2.25500097491597526577, 1e-12)
+}
+
+func TestTheAwkwardEnds(t *testing.T) {
+	for _, c := range []struct {
+		name string
+		l    law.Law
+		beta float64
+	}{
+		{"exponent near 0", law.Power{Theta: 1e-3}, 30}, {"exponent just below 0", law.Power{Theta: -1e-6}, 2}, {"exponent near -1", law.Power{Theta: -.999}, 2}, {"sharp", law.Power{Theta: 1}, 1e6}, {"sharp, no condensate", law.Uniform{}, 1e6},
+		{"blunt", law.Power{Theta: 1}, 1e-6}, {"tiny ground", tinyGround(t), 8}, {"wide", law.Gamma{Shape: 2, Scale: 1e6}, 1}, {"thin formula", formula(t, "exp(-1/e)", 1), 20}, {"rounding", formula(t, "1-cos(e)", 1), 1},
+	} {
+		for _, rule := range []Rule{plain, {Links: 1, HeadStart: 1e6}, {Links: 64, OpenShare: 1 - 1e-9}} {
+			s, err := Solve(c.l, c.beta, rule)
+			if err != nil {
+				t.Errorf("%s: %v", c.name, err)
+				continue
+			}
+			if math.IsNaN(s.Margin) || math.IsNaN(s.BetaMu) || math.IsNaN(s.Condensate) || math.IsNaN(s.LeaderExponent) || s.Condensate < 0 || s.BetaMu > 0 || math.IsNaN(s.MuSlope) {
+				t.Errorf("%s: %+v", c.name, s)
+			}
+			for _, v := range CurvesOf(c.l, c.beta, rule, s).Mu {
+				if math.IsNaN(v) || v > 0 {
+					t.Errorf("%s: a curve holds %g", c.name, v)
+				}
+			}
+		}
+	}
+	// A law with p(0) = 1e-30 is fit-get-rich on paper: mu from I = 1, p0/beta ln(1/(beta |mu|)) + the rest of I.
+	s, _ := Solve(tinyGround(t), 1.2, plain)
+	if s.Regime != FitGetRich || !(s.Mu < 0) {
+		t.Errorf("tiny ground: %+v", s)
+	}
+}
+
 func TestLevelAndRecords(t *testing.T) {
 	s, _ := Solve(law.Power{Theta: 1}, 0, plain)
 	if s.Regime != Level || math.Abs(s.LeaderExponent+0.5) > 1e-15 || math.Abs(s.Halving-4) > 1e-12 {
@@ -168,12 +235,56 @@ func TestLevelAndRecords(t *testing.T) {
 	if s, _ := Solve(law.Lognormal{Sigma: 1}, 1, plain); s.Regime != Records {
 		t.Errorf("lognormal: %v", s.Regime)
 	}
+	// Records among 1,000: the harmonic number 7.485470861 (Renyi). The fittest of 100: P(z > all) = 1/2 at z = 2.4618,
+	// the normal quantile of 2^(-1/100) = 0.993092 (normal table: 0.99309 at 2.4622).
+	top := TopOf(law.Lognormal{Sigma: 1}, 1000)
+	near.Rel(t, "records", top.Records, 7.485470860550345, 1e-12)
+	near.Abs(t, "fittest of 100", TopOf(law.Lognormal{Sigma: 1}, 100).Mid, -2.462, 1e-3)
 }
 
+// The whole of what the page asks for in one step of a drag, curves of 400 points: the mean is to stay below 2 ms.
 func BenchmarkSolveWithCurves(b *testing.B) {
-	for b.Loop() {
-		s := NewSpectrum(law.Power{Theta: 1})
-		sol, _ := s.Solve(3, plain)
-		s.Curves(3, plain, sol)
+	for _, c := range []struct {
+		name string
+		law  law.Law
+		beta float64
+	}{
+		{"condensate", law.Power{Theta: 1}, 3}, {"fit-get-rich", law.Power{Theta: 0.2}, 1}, {"beta", law.Beta{A: 2, B: 1.5}, 2}, {"never", law.Uniform{}, 8}, {"gamma", law.Gamma{Shape: 0.7, Scale: 1}, 2},
+		{"tiers", law.NewTiers([]float64{0, .5, 2}, []float64{.1, .3, .6}), 3}, {"drawn", twoHumps(b), 3}, {"tiny ground", tinyGround(b), 8}, {"formula", formula(b, "e*exp(-3*e)+0.2*e^4", 2), 3}, {"kinks", formula(b, "abs(e-0.3)*max(0,sin(9*e))+e^2", 2), 3},
+	} {
+		b.Run(c.name, func(b *testing.B) {
+			for b.Loop() {
+				s := NewSpectrum(c.law)
+				sol, err := s.Solve(c.beta, plain)
+				if err != nil {
+					b.Fatal(err)
+				}
+				s.Curves(c.beta, plain, sol)
+			}
+		})
 	}
+}
+
+func twoHumps(t testing.TB) law.Law {
+	return drawn(t, law.Knot{}, law.Knot{Eps: .2, Density: .8}, law.Knot{Eps: .4, Density: .1}, law.Knot{Eps: .8, Density: 2}, law.Knot{Eps: 1.3})
+}
+
+func tinyGround(t testing.TB) law.Law {
+	return drawn(t, law.Knot{Density: 1e-30}, law.Knot{Eps: .2, Density: .8}, law.Knot{Eps: 1.3})
+}
+
+func drawn(t testing.TB, k ...law.Knot) law.Law {
+	l, err := law.NewDrawn(k)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return l
+}
+
+func formula(t testing.TB, text string, top float64) law.Law {
+	l, err := law.NewFormula(text, top)
+	if err != nil {
+		t.Fatalf("%s: %v", text, err)
+	}
+	return l
 }

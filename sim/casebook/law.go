@@ -9,18 +9,23 @@ import (
 	"preponder/sim/law"
 )
 
-// MaxTiers bounds a discrete law.
-const MaxTiers = 64
+// MaxTiers and MaxKnots bound discrete and drawn laws.
+const MaxTiers, MaxKnots = 64, 64
 
 // A Law names a family and its values, as in the case format:
 //
 //	{"family": "power", "theta": 1}
 //	{"family": "tiers", "tiers": [{"energy": 0, "weight": 1}]}
+//	{"family": "drawn", "knots": [[0, 0], [0.5, 2], [1, 0]]}
+//	{"family": "formula", "density": "e*(1-e)", "top": 1}
 //	{"family": "evidence"}    the law read from the casebook's log
 type Law struct {
-	Family string
-	Values map[string]float64
-	Tiers  []Tier
+	Family  string
+	Values  map[string]float64
+	Tiers   []Tier
+	Knots   [][2]float64 // energy, density
+	Density string
+	made    law.Law // by check
 }
 
 // A Tier is one level of a discrete law.
@@ -44,6 +49,10 @@ func (l *Law) UnmarshalJSON(data []byte) error {
 			d := json.NewDecoder(bytes.NewReader(raw[name]))
 			d.DisallowUnknownFields()
 			err = d.Decode(&l.Tiers)
+		case "knots":
+			l.Knots, err = readKnots(raw[name])
+		case "density":
+			err = json.Unmarshal(raw[name], &l.Density)
 		default:
 			var v float64
 			err = json.Unmarshal(raw[name], &v)
@@ -56,6 +65,22 @@ func (l *Law) UnmarshalJSON(data []byte) error {
 	return nil
 }
 
+// readKnots reads pairs: an array of another length would be filled up or cut off by the decoder.
+func readKnots(data []byte) ([][2]float64, error) {
+	var rows [][]float64
+	if err := json.Unmarshal(data, &rows); err != nil {
+		return nil, err
+	}
+	out := make([][2]float64, len(rows))
+	for i, r := range rows {
+		if len(r) != 2 {
+			return nil, fmt.Errorf("knot %d has %d numbers; a knot is an energy and a density", i+1, len(r))
+		}
+		out[i] = [2]float64{r[0], r[1]}
+	}
+	return out, nil
+}
+
 func (l Law) MarshalJSON() ([]byte, error) {
 	out := map[string]any{"family": l.Family}
 	for k, v := range l.Values {
@@ -63,6 +88,12 @@ func (l Law) MarshalJSON() ([]byte, error) {
 	}
 	if len(l.Tiers) > 0 {
 		out["tiers"] = l.Tiers
+	}
+	if len(l.Knots) > 0 {
+		out["knots"] = l.Knots
+	}
+	if l.Family == "formula" {
+		out["density"] = l.Density
 	}
 	return json.Marshal(out)
 }
@@ -76,53 +107,106 @@ func sortedKeys[V any](m map[string]V) []string {
 	return keys
 }
 
-// check fills in defaults and refuses what the family does not know.
+// check fills in defaults, refuses what the family does not know, and makes the distribution.
 func (l *Law) check(hasEvidence bool) error {
+	if err := l.fieldsOf(); err != nil {
+		return fmt.Errorf("law: %w", err)
+	}
+	var err error
 	switch l.Family {
-	case "":
-		return fmt.Errorf("law: the family is missing")
 	case "evidence":
 		if !hasEvidence {
 			return fmt.Errorf("law: the entry takes its law from evidence, but the casebook holds none; read a log first or choose a family")
 		}
-		if len(l.Values) > 0 || len(l.Tiers) > 0 {
-			return fmt.Errorf("law: the family \"evidence\" takes no values")
-		}
-		return nil
 	case "tiers":
-		return l.checkTiers()
+		err = l.checkTiers()
+	case "drawn":
+		err = l.draw()
+	case "formula":
+		l.made, err = law.NewFormula(l.Density, l.Values["top"])
+	default:
+		var f law.Family
+		if f, err = law.FamilyNamed(l.Family); err == nil {
+			if err = f.Check(l.values(f)); err == nil {
+				l.made = f.Make(l.values(f))
+			}
+		}
 	}
-	f, err := law.FamilyNamed(l.Family)
 	if err != nil {
-		return err
+		return fmt.Errorf("law: %w", err)
+	}
+	return nil
+}
+
+// fieldsOf fills in defaults and refuses fields the family does not have.
+func (l *Law) fieldsOf() error {
+	if l.Family == "" {
+		return fmt.Errorf("the family is missing")
 	}
 	known := map[string]bool{}
-	for _, row := range f.Fields {
-		known[row.Name] = true
-		if _, given := l.Values[row.Name]; !given {
-			l.Values[row.Name] = row.Default
+	switch l.Family {
+	case "evidence", "tiers", "drawn":
+	case "formula":
+		known["top"] = true
+		if _, given := l.Values["top"]; !given {
+			l.Values["top"] = 1
+		}
+	default:
+		f, err := law.FamilyNamed(l.Family)
+		if err != nil {
+			return err
+		}
+		for _, row := range f.Fields {
+			known[row.Name] = true
+			if _, given := l.Values[row.Name]; !given {
+				l.Values[row.Name] = row.Default
+			}
 		}
 	}
 	for _, name := range sortedKeys(l.Values) {
 		if !known[name] {
-			return fmt.Errorf("law: the %s law has no field %q", l.Family, name)
+			return fmt.Errorf("the %s law has no field %q", l.Family, name)
 		}
 	}
-	return f.Check(l.values(f))
+	for _, r := range []struct {
+		name, family string
+		given        bool
+	}{{"tiers", "tiers", len(l.Tiers) > 0}, {"knots", "drawn", len(l.Knots) > 0}, {"density", "formula", l.Density != ""}} {
+		if r.given && l.Family != r.family {
+			return fmt.Errorf("the %s law has no field %q", l.Family, r.name)
+		}
+	}
+	return nil
 }
 
 func (l *Law) checkTiers() error {
-	if len(l.Values) > 0 {
-		return fmt.Errorf("law: the family \"tiers\" has no field %q", sortedKeys(l.Values)[0])
-	}
 	if len(l.Tiers) == 0 || len(l.Tiers) > MaxTiers {
-		return fmt.Errorf("law: a tiers law has 1 to %d levels; this one has %d", MaxTiers, len(l.Tiers))
+		return fmt.Errorf("a tiers law has 1 to %d levels; this one has %d", MaxTiers, len(l.Tiers))
 	}
+	var e, w []float64
 	for i, t := range l.Tiers {
 		if !(t.Weight > 0) || t.Weight > 1e12 || t.Energy < -1e6 || t.Energy > 1e6 {
-			return fmt.Errorf("law: level %d has energy %g and weight %g; weights must be above 0, energies between -1e6 and 1e6", i+1, t.Energy, t.Weight)
+			return fmt.Errorf("level %d has energy %g and weight %g; weights must be above 0, energies between -1e6 and 1e6", i+1, t.Energy, t.Weight)
 		}
+		e, w = append(e, t.Energy), append(w, t.Weight)
 	}
+	l.made = law.NewTiers(e, w)
+	return nil
+}
+
+func (l *Law) draw() error {
+	if len(l.Knots) > MaxKnots {
+		return fmt.Errorf("a drawn law has at most %d knots; this one has %d", MaxKnots, len(l.Knots))
+	}
+	var knots []law.Knot
+	for _, k := range l.Knots {
+		knots = append(knots, law.Knot{Eps: k[0], Density: k[1]})
+	}
+	made, err := law.NewDrawn(knots)
+	if err != nil {
+		return err
+	}
+	l.made = made
 	return nil
 }
 
@@ -136,16 +220,8 @@ func (l Law) values(f law.Family) []float64 {
 
 // Make returns the distribution of a checked law that is not "evidence".
 func (l Law) Make() law.Law {
-	if l.Family == "tiers" {
-		var e, w []float64
-		for _, t := range l.Tiers {
-			e, w = append(e, t.Energy), append(w, t.Weight)
-		}
-		return law.NewTiers(e, w)
+	if l.made == nil {
+		panic("casebook: unchecked law " + l.Family)
 	}
-	f, err := law.FamilyNamed(l.Family)
-	if err != nil {
-		panic("casebook: unchecked law: " + err.Error())
-	}
-	return f.Make(l.values(f))
+	return l.made
 }

@@ -63,7 +63,7 @@ func FamilyNamed(name string) (Family, error) {
 		}
 		known = append(known, f.Name)
 	}
-	return Family{}, fmt.Errorf("the law %q is not known to this version; it knows %s and tiers", name, strings.Join(known, ", "))
+	return Family{}, fmt.Errorf("the law %q is not known to this version; it knows %s, tiers, drawn and formula", name, strings.Join(known, ", "))
 }
 
 // Make returns the law with the given parameters, which must lie in the ranges of the rows.

@@ -18,9 +18,10 @@ type Law interface {
 	Edge() Edge
 }
 
-// An Edge is the leading term p(eps) ~ Scale * eps^Theta as eps -> 0, and the mass of an atom at the ground level.
+// An Edge is the leading term p(eps) ~ Scale * eps^Theta as eps -> 0, and the mass of an atom at the ground level. Below
+// an energy of Below, where it is not 0, the leading term alone is right to rounding.
 type Edge struct {
-	Theta, Scale, Atom float64
+	Theta, Scale, Atom, Below float64
 }
 
 // A Leveled law is discrete: members share a few energies.

@@ -19,5 +19,17 @@ func (p Scaled) Support() (low, high float64) {
 func (p Scaled) Edge() Edge {
 	e := p.Law.Edge()
 	e.Scale *= math.Pow(p.By, -e.Theta-1)
+	e.Below *= p.By
 	return e
+}
+
+// Knots are those of the law, scaled.
+func (p Scaled) Knots() []float64 {
+	var out []float64
+	if pieced, ok := p.Law.(Pieced); ok {
+		for _, k := range pieced.Knots() {
+			out = append(out, k*p.By)
+		}
+	}
+	return out
 }

@@ -21,6 +21,8 @@ type entryRequest struct {
 	Casebook json.RawMessage `json:"casebook"`
 	Entry    int             `json:"entry"` // from 0
 	Curves   bool            `json:"curves"`
+	Reach    bool            `json:"reach"`   // also how far the planned size is from endless growth: some 20 ms
+	Planned  int             `json:"planned"` // size to speak of, 0 = the horizon of the entry's outlook
 	Columns  bool            `json:"columns"`
 	Digest   bool            `json:"digest"`
 }
@@ -51,9 +53,48 @@ type Solved struct {
 	Halving           wire.Num         `json:"halving"`
 	CriticalSharpness wire.Num         `json:"criticalSharpness"`
 	MeanFitness       wire.Num         `json:"meanFitness"`
+	DegreeExponent    wire.Num         `json:"degreeExponent"`
+	MuSlope           wire.Num         `json:"muSlope"` // d mu/d sharpness
+	Edge              Edge             `json:"edge"`
+	Errors            Errors           `json:"errors"`
+	Records           *Records         `json:"records,omitempty"`
+	Reach             *Reach           `json:"reach,omitempty"`
 	Dissolve          Dissolve         `json:"dissolve"`
 	Verdict           standing.Verdict `json:"verdict"`
 	Curves            *Curves          `json:"curves,omitempty"`
+}
+
+// Edge is the leading term of the density at the ground level.
+type Edge struct {
+	Theta       wire.Num `json:"theta"`       // exponent; null where there is no ground level
+	Uncertainty wire.Num `json:"uncertainty"` // of an exponent found numerically
+	Atom        float64  `json:"atom"`        // share of members at the ground level itself
+}
+
+// Errors are estimated relative errors.
+type Errors struct {
+	GroundIntegral    wire.Num `json:"groundIntegral"`
+	Mu                wire.Num `json:"mu"`
+	CriticalSharpness wire.Num `json:"criticalSharpness"`
+}
+
+// Records is the fittest of today's members where there is no top fitness: log10 of its fitness over the middle one.
+type Records struct {
+	Members int     `json:"members"`
+	Low     float64 `json:"low"`
+	Mid     float64 `json:"mid"`
+	High    float64 `json:"high"`
+	Count   float64 `json:"count"`
+}
+
+// Reach is how far the planned size is from endless growth, as a share of the pull there, and the sizes between which it
+// comes within 10 %; null past 1e30.
+type Reach struct {
+	Members int      `json:"members"`
+	Low     float64  `json:"low"`
+	High    float64  `json:"high"`
+	Early   wire.Num `json:"early"`
+	Late    wire.Num `json:"late"`
 }
 
 // Dissolve are the levers that alone dissolve a condensate.
@@ -94,15 +135,48 @@ func solve(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 	if err != nil {
 		return reply{}, err
 	}
-	v := standing.Describe(standing.Facts{Solution: s, Ceiling: e.Growth.Ceiling, Distinct: e.Growth.Distinct, Links: e.Growth.Links, Late: e.Growth.LeversFrom})
-	out := Solved{Regime: v.Regime, Reason: v.Reason, Balance: wire.Num(s.Balance), GroundIntegral: wire.Num(s.GroundIntegral), Margin: wire.Num(s.Margin),
+	facts := standing.Facts{Solution: s, Ceiling: e.Growth.Ceiling, Distinct: e.Growth.Distinct, Links: e.Growth.Links, Late: e.Growth.LeversFrom, Planned: float64(e.Outlook.Horizon), Beta: beta}
+	if ask.Planned > 0 {
+		facts.Planned = float64(ask.Planned)
+	}
+	out := Solved{Balance: wire.Num(s.Balance), GroundIntegral: wire.Num(s.GroundIntegral), Margin: wire.Num(s.Margin),
 		Mu: wire.Num(s.Mu), BetaMu: wire.Num(s.BetaMu), Condensate: wire.Num(s.Condensate), LeaderExponent: wire.Num(s.LeaderExponent), Halving: wire.Num(s.Halving),
-		CriticalSharpness: wire.Num(s.CriticalSharpness), MeanFitness: wire.Num(s.MeanFitness),
-		Dissolve: Dissolve{wire.Num(s.DissolveHeadStart), wire.Num(s.DissolveOpenShare)}, Verdict: v}
+		CriticalSharpness: wire.Num(s.CriticalSharpness), MeanFitness: wire.Num(s.MeanFitness), DegreeExponent: wire.Num(s.DegreeExponent), MuSlope: wire.Num(s.MuSlope),
+		Edge: edgeOf(l), Errors: Errors{wire.Num(s.Errors.GroundIntegral), wire.Num(s.Errors.Mu), wire.Num(s.Errors.CriticalSharpness)},
+		Dissolve: Dissolve{wire.Num(s.DissolveHeadStart), wire.Num(s.DissolveOpenShare)}}
+	switch {
+	case s.Regime == bose.Records:
+		top := bose.TopOf(l, float64(e.Growth.Members))
+		facts.Top = &top
+		out.Records = &Records{e.Growth.Members, -beta * top.High / math.Ln10, -beta * top.Mid / math.Ln10, -beta * top.Low / math.Ln10, top.Records}
+	case ask.Reach && s.Regime != bose.Level && s.Balance > 0:
+		r := bose.NewReach(l, beta, s.BetaMu, rule)
+		facts.Reach = r
+		low, high := r.Pull(facts.Planned)
+		early, late := r.Within(0.1)
+		out.Reach = &Reach{int(facts.Planned), low, high, wire.Num(early), wire.Num(late)}
+	}
+	v := standing.Describe(facts)
+	out.Regime, out.Reason, out.Verdict = v.Regime, v.Reason, v
 	if ask.Curves {
 		out.Curves = curvesOf(l, beta, rule, s)
 	}
 	return reply{body: out}, nil
+}
+
+func edgeOf(l law.Law) Edge {
+	if low, _ := l.Support(); math.IsInf(low, -1) {
+		return Edge{Theta: wire.Num(math.NaN()), Uncertainty: wire.Num(math.NaN())}
+	}
+	e := l.Edge()
+	out := Edge{wire.Num(e.Theta), 0, e.Atom}
+	if found, ok := l.(interface{ EdgeUncertainty() float64 }); ok {
+		out.Uncertainty = wire.Num(found.EdgeUncertainty())
+	}
+	if e.Atom > 0 {
+		out.Theta = wire.Num(math.NaN())
+	}
+	return out
 }
 
 func curvesOf(l law.Law, beta float64, rule bose.Rule, s bose.Solution) *Curves {

@@ -15,6 +15,10 @@ type Facts struct {
 	Distinct bool
 	Links    float64
 	Late     int // size at which levers begin, 0 = from the start
+	Planned  float64
+	Reach    *bose.Reach      // how far sizes are from endless growth; nil where not asked for
+	Top      *bose.TopFitness // in records, at today's size
+	Beta     float64
 }
 
 // A Verdict is what an entry folds down to.
@@ -24,7 +28,11 @@ type Verdict struct {
 	Line    string      `json:"line"`   // one sentence on endless growth
 	Reason  string      `json:"reason"` // why the theory does not speak, or what it leaves out
 	Margin  string      `json:"margin"` // the margin in words
+	AtSize  string      `json:"atSize"` // where the planned size is far from endless growth: how far, and from what size on not
 }
+
+// near is how close the pull must come to that of endless growth for the theory to speak of a size.
+const near = 0.1
 
 // Describe returns the verdict.
 func Describe(f Facts) Verdict {
@@ -52,10 +60,15 @@ func Describe(f Facts) Verdict {
 	case bose.Records:
 		v.Heading, v.Line = "Records", "This law has no top fitness: fitter members take over in turn, for ever."
 		v.Margin = "without a ground level there is no margin"
+		v.AtSize = records(f)
 	default:
 		v.Heading, v.Line = "No limit verdict", "The theory of endless growth does not cover this rule; the outlook answers."
 	}
+	if f.Reach != nil && f.Planned > 1 {
+		v.AtSize = atSize(f)
+	}
 	if f.Ceiling > 0 {
+		v.AtSize = ""
 		v.lever(f, s)
 	} else if f.Distinct && s.Regime == bose.Condensate {
 		v.Reason = fmt.Sprintf("Distinct partners keep any one member at %s of all links or below.", Percent(1/math.Max(1, f.Links)))
@@ -74,6 +87,71 @@ func (v *Verdict) lever(f Facts, s bose.Solution) {
 	}
 	v.Heading += ", with a ceiling"
 	v.Line = fmt.Sprintf("No member takes links while it holds %s of all.", Percent(f.Ceiling))
+}
+
+// atSize says how far the planned size is from endless growth; nothing where the theory speaks of it.
+func atSize(f Facts) string {
+	low, high := f.Reach.Pull(f.Planned)
+	if low > 1-near {
+		return ""
+	}
+	early, late := f.Reach.Within(near)
+	when := "at no size a network can reach"
+	switch {
+	case math.IsInf(late, 1) && !math.IsInf(early, 1):
+		when = fmt.Sprintf("from about %s members at the earliest", size(early))
+	case !math.IsInf(late, 1) && math.Round(math.Log10(early)) == math.Round(math.Log10(late)):
+		when = fmt.Sprintf("from about %s members on", size(late))
+	case !math.IsInf(late, 1):
+		when = fmt.Sprintf("only from somewhere between %s and %s members on", size(early), size(late))
+	}
+	short := fmt.Sprintf("%s short of", Percent(1-low))
+	if a, b := Percent(1-high), Percent(1-low); a != b && high < 1 {
+		short = fmt.Sprintf("%s to %s short of", a, b)
+	}
+	text := fmt.Sprintf("At the planned %s members the pull is still %s its value in endless growth; theory is within 10 %% %s. For your size, go by the outlook.", size(f.Planned), short, when)
+	if f.Solution.Regime == bose.FitGetRich && high*math.Exp(-f.Solution.BetaMu) < 1 {
+		return "On paper only: up to the planned size it behaves like a condensate, and the fittest still gain share. " + text
+	}
+	return text
+}
+
+// records says what can be said at a size where no limit exists.
+func records(f Facts) string {
+	if f.Top == nil {
+		return ""
+	}
+	t := f.Top
+	return fmt.Sprintf("Among %s members the fittest is expected at %s times the middle fitness (%s to %s in 95 of 100 networks), and about %.0f of them were fitter than all before. The outlook shows how large a share that brings.",
+		size(t.Members), fold(-f.Beta*t.Mid), fold(-f.Beta*t.High), fold(-f.Beta*t.Low), t.Records)
+}
+
+// fold writes exp(x).
+func fold(x float64) string {
+	switch v := math.Exp(x); {
+	case x > math.Log(1e6):
+		return fmt.Sprintf("10 to the %.0f", x/math.Ln10)
+	case v >= 100:
+		return size(v)
+	default:
+		return fmt.Sprintf("%.2g", v)
+	}
+}
+
+// size writes a number of members: to two digits above 100,000, as a power of ten above a thousand million.
+func size(n float64) string {
+	if n > 1e9 {
+		return fmt.Sprintf("10 to the %.0f", math.Log10(n))
+	}
+	if n > 1e5 {
+		unit := math.Pow(10, math.Floor(math.Log10(n))-1)
+		n = math.Round(n/unit) * unit
+	}
+	s := fmt.Sprintf("%.0f", n)
+	for i := len(s) - 3; i > 0; i -= 3 {
+		s = s[:i] + "," + s[i:]
+	}
+	return s
 }
 
 func lower(s string) string {

@@ -33,6 +33,40 @@ func TestSentences(t *testing.T) {
 	}
 }
 
+func TestAtSize(t *testing.T) {
+	drawn, err := law.NewDrawn([]law.Knot{{Density: 1e-30}, {Eps: 1, Density: 2}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		l    law.Law
+		beta float64
+		n    float64
+		want string
+	}{
+		{law.Power{Theta: 1}, 1, 20000, ""},
+		{law.Power{Theta: 1}, 3, 20000, "At the planned 20,000 members the pull is still 19 % to 34 % short of its value in endless growth; theory is within 10 % only from somewhere between 10 to the 12 and 10 to the 15 members on. For your size, go by the outlook."},
+		{drawn, 3, 20000, "On paper only: up to the planned size it behaves like a condensate, and the fittest still gain share. At the planned 20,000 members the pull is still 19 % to 34 % short of its value in endless growth; theory is within 10 % only from somewhere between 10 to the 12 and 10 to the 15 members on. For your size, go by the outlook."},
+		{law.Lognormal{Sigma: 1}, 1, 5000, "Among 5,000 members the fittest is expected at 38 times the middle fitness (24 to 83 in 95 of 100 networks), and about 9 of them were fitter than all before. The outlook shows how large a share that brings."},
+	} {
+		rule := bose.Rule{Links: 2}
+		s, err := bose.Solve(c.l, c.beta, rule)
+		if err != nil {
+			t.Fatal(err)
+		}
+		f := Facts{Solution: s, Links: 2, Planned: c.n, Beta: c.beta}
+		if s.Regime == bose.Records {
+			top := bose.TopOf(c.l, c.n)
+			f.Top = &top
+		} else {
+			f.Reach = bose.NewReach(c.l, c.beta, s.BetaMu, rule)
+		}
+		if got := Describe(f).AtSize; got != c.want {
+			t.Errorf("%#v at %g: %q, want %q", c.l, c.beta, got, c.want)
+		}
+	}
+}
+
 func TestPercent(t *testing.T) {
 	for x, want := range map[float64]string{.41: "41 %", .0999: "10 %", .0123: "1.2 %", .00456: "0.46 %", .00001: "less than 0.01 %", 1: "100 %", .9999: "more than 99.9 %"} {
 		if got := Percent(x); got != want {

@@ -1,13 +1,13 @@
 // Command preponder answers the requests of the page from a terminal.
 //
-//	preponder solve CASE [--entry k] [--curves]
+//	preponder solve CASE [--entry k] [--curves] [--vary sharpness=0.5:8:0.1]
 //	preponder grow CASE [--entry k] [--log FILE.csv]
 //	preponder read LOG.csv [--map source=..,target=..,time=..] [--condensed]
 //	preponder outlook CASE [--entry k] [--runs 0-199] [--partial]
 //	preponder gather PART...
 //	preponder sample
 //
-// CASE is a casebook file, a code, or - for standard input. Answers are JSON on standard output; errors go to standard
+// CASE is a casebook file, a code, or - for standard input. Answers are JSON on standard output, CSV with --vary; errors go to standard
 // error, with exit code 1 for bad input and 2 for misuse.
 package main
 
@@ -54,6 +54,7 @@ type call struct {
 	log     string
 	runs    string
 	mapping string
+	vary    string
 	args    []string
 }
 
@@ -74,6 +75,7 @@ func run(args []string, in io.Reader, out io.Writer) error {
 	flags.BoolVar(&c.keep, "condensed", false, "")
 	flags.StringVar(&c.log, "log", "", "")
 	flags.StringVar(&c.runs, "runs", "", "")
+	flags.StringVar(&c.vary, "vary", "", "")
 	flags.StringVar(&c.mapping, "map", "", "")
 	// Flags may stand before and after files.
 	rest := args[1:]
@@ -158,7 +160,10 @@ func (c *call) about(kind string, more map[string]any) (wire.Packet, error) {
 }
 
 func (c *call) solve() error {
-	p, err := c.about("solve", map[string]any{"curves": c.curves})
+	if c.vary != "" {
+		return c.varying()
+	}
+	p, err := c.about("solve", map[string]any{"curves": c.curves, "reach": true})
 	if err != nil {
 		return err
 	}

@@ -55,6 +55,25 @@ func TestWalkThrough(t *testing.T) {
 	}
 }
 
+func TestVary(t *testing.T) {
+	out, err := answer(t, `{"casebook":1,"entries":[{"sharpness":3}]}`, "solve", "-", "--vary", "theta=0.5:2:0.5")
+	if err != nil {
+		t.Fatal(err)
+	}
+	lines := strings.Split(strings.TrimSpace(out), "\r\n")
+	if len(lines) != 5 || !strings.HasPrefix(lines[0], "theta,regime,groundIntegral,") || !strings.HasPrefix(lines[2], "1,condensate,0.32029014638202") {
+		t.Errorf("%q", lines)
+	}
+	// A row is what solve says of the same case.
+	one, err := answer(t, `{"casebook":1,"entries":[{"sharpness":3,"law":{"family":"power","theta":0.5}}]}`, "solve", "-")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if i := strings.Split(lines[1], ",")[2]; !strings.Contains(one, `"groundIntegral": `+i) {
+		t.Errorf("ground integral %s is not that of solve", i)
+	}
+}
+
 func TestMisuseAndBadInput(t *testing.T) {
 	for _, c := range []struct {
 		args   []string
@@ -68,6 +87,11 @@ func TestMisuseAndBadInput(t *testing.T) {
 		{[]string{"solve", "-", "--wrong"}, "", true, "-wrong"},
 		{[]string{"outlook", "-", "--runs", "many"}, "{}", true, "--runs"},
 		{[]string{"gather"}, "", true, "parts"},
+		{[]string{"solve", "-", "--vary", "sharpness"}, "{}", true, "--vary takes"},
+		{[]string{"solve", "-", "--vary", "sharpness=0:1:0"}, "{}", true, "by a step above 0"},
+		{[]string{"solve", "-", "--vary", "sharpness=0:1:1e-9"}, "{}", true, "more than 100000 rows"},
+		{[]string{"solve", "-", "--vary", "wind=0:1:1"}, `{"casebook":1,"entries":[{}]}`, false, `no field "wind"`},
+		{[]string{"solve", "-", "--vary", "theta=-2:1:1"}, `{"casebook":1,"entries":[{}]}`, false, "theta of the power law is -2"},
 		{[]string{"solve", "-"}, "{}", false, "not a casebook"},
 		{[]string{"solve", "-"}, "hello", false, "not a Preponder code"},
 		{[]string{"solve", "-", "--entry", "4"}, `{"casebook":1,"entries":[{}]}`, false, "There is no entry 4"},
