@@ -138,6 +138,18 @@ func (l *Law) check(hasEvidence bool) error {
 	return nil
 }
 
+// ReadLaw reads and checks a law that stands alone.
+func ReadLaw(data []byte) (Law, error) {
+	var l Law
+	if err := json.Unmarshal(data, &l); err != nil {
+		return l, err
+	}
+	if l.Family == "evidence" {
+		return l, fmt.Errorf("law: the law of the evidence cannot be checked alone")
+	}
+	return l, l.check(false)
+}
+
 // fieldsOf fills in defaults and refuses fields the family does not have.
 func (l *Law) fieldsOf() error {
 	if l.Family == "" {
@@ -150,6 +162,9 @@ func (l *Law) fieldsOf() error {
 		known["top"] = true
 		if _, given := l.Values["top"]; !given {
 			l.Values["top"] = 1
+		}
+		if l.Density == "" {
+			return fmt.Errorf("the formula is empty; write a density in the energy e, as e*(2-e)")
 		}
 	default:
 		f, err := law.FamilyNamed(l.Family)

@@ -143,6 +143,30 @@ func TestDrawnLaw(t *testing.T) {
 	}
 }
 
+func TestSketch(t *testing.T) {
+	for _, l := range []law.Law{law.Power{Theta: 1}, law.Power{Theta: 3}, law.Power{Theta: -.3}, law.Beta{A: 2, B: 3}, law.Beta{A: 4, B: .7}, law.Uniform{}, law.Gamma{Shape: 2, Scale: 1}, law.Lognormal{Sigma: 1}, formula(t, "e^2*(1+0.8*sin(9*e))", 2),
+		law.NewTiers([]float64{0, 1, 3}, []float64{.2, .3, .5})} {
+		knots := law.Sketch(l, 14)
+		d, err := law.NewDrawn(knots)
+		if err != nil || len(knots) > 14 {
+			t.Errorf("%#v: %v, %v", l, knots, err)
+			continue
+		}
+		// The share of members on the wrong side of any energy stays small.
+		low, _ := l.Support()
+		if math.IsInf(low, -1) {
+			low = l.Quantile(.003)
+		}
+		for _, u := range []float64{.05, .2, .4, .6, .8, .95} {
+			if _, leveled := l.(law.Leveled); leveled {
+				near.Abs(t, fmt.Sprintf("%#v sketched", l), d.Quantile(u), l.Quantile(u), .11)
+				continue
+			}
+			near.Abs(t, fmt.Sprintf("%#v sketched", l), d.Cumulative(l.Quantile(u)-low), u, .03)
+		}
+	}
+}
+
 func TestFormulaIsRefused(t *testing.T) {
 	for _, c := range []struct {
 		text string

@@ -2,7 +2,11 @@ package service
 
 import (
 	"encoding/json"
+	"errors"
 	"fmt"
+	"slices"
+	"strconv"
+	"strings"
 
 	"preponder/sim/casebook"
 	"preponder/sim/evidence"
@@ -14,10 +18,10 @@ import (
 // tables answers with what the page draws its controls from, and the demo casebook.
 func tables(*Engine, wire.Packet, Step) (reply, error) {
 	return reply{body: map[string]any{
-		"families": law.Families, "levers": growth.Levers, "caution": evidence.Caution,
+		"families": slices.Concat(law.Families, law.Shaped), "levers": growth.Levers, "caution": evidence.Caution,
 		"demo": casebook.Demo(), "demoOpen": casebook.DemoOpen, "newEntry": casebook.NewEntry(),
 		"limits": map[string]any{"members": growth.MaxMembers, "links": growth.MaxLinks, "sharpness": casebook.MaxSharpness, "runs": casebook.MaxRuns,
-			"rows": evidence.MaxRows, "bytes": evidence.MaxBytes, "code": casebook.MaxCode, "title": casebook.MaxTitle, "note": casebook.MaxNote},
+			"rows": evidence.MaxRows, "bytes": evidence.MaxBytes, "code": casebook.MaxCode, "title": casebook.MaxTitle, "knots": casebook.MaxKnots, "tiers": casebook.MaxTiers, "formula": law.MaxExpression, "note": casebook.MaxNote},
 	}}, nil
 }
 
@@ -91,4 +95,47 @@ func file(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 	}
 	b, err := c.File()
 	return reply{columns: []wire.Column{{Name: "file", Bytes: b}}}, err
+}
+
+// lawCheck answers whether a law can be used: while it is typed, before it enters the casebook.
+func lawCheck(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	var ask struct {
+		Law json.RawMessage `json:"law"`
+	}
+	if err := json.Unmarshal(p.Body, &ask); err != nil {
+		return reply{}, err
+	}
+	l, err := casebook.ReadLaw(ask.Law)
+	if err != nil {
+		out := map[string]any{"fault": sentence(strings.TrimPrefix(err.Error(), "law: ")), "at": 0}
+		var place *law.SyntaxError
+		if errors.As(err, &place) {
+			out["at"] = place.At
+		}
+		return reply{body: out}, nil
+	}
+	return reply{body: map[string]any{"law": l}}, nil
+}
+
+// sketchKnots is how many knots a law that becomes a drawn one gets.
+const sketchKnots = 14
+
+// sketch answers with the knots of a drawn law close to that of an entry.
+func sketch(_ *Engine, p wire.Packet, _ Step) (reply, error) {
+	ask, c, err := entryOf(p)
+	if err != nil {
+		return reply{}, err
+	}
+	l, _ := c.LawOf(ask.Entry)
+	knots := [][2]float64{}
+	for _, k := range law.Sketch(l, sketchKnots) {
+		short := func(v float64) float64 {
+			s, _ := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 4, 64), 64)
+			return s
+		}
+		if n := len(knots); n == 0 || short(k.Eps) > knots[n-1][0] {
+			knots = append(knots, [2]float64{short(k.Eps), short(k.Density)})
+		}
+	}
+	return reply{body: map[string]any{"knots": knots}}, nil
 }

@@ -47,7 +47,7 @@ var kinds map[string]handler
 
 func init() {
 	kinds = map[string]handler{
-		"tables": tables, "open": open, "decode": decode, "encode": encode, "file": file,
+		"tables": tables, "open": open, "decode": decode, "encode": encode, "file": file, "law": lawCheck, "sketch": sketch,
 		"solve": solve, "grow": grow, "member": member, "export": export,
 		"look": look, "read": read, "study": study, "words": words, "sample": sample,
 		"outlook": runOutlook, "gather": gather,

@@ -109,7 +109,9 @@ type Curves struct {
 	Density    []wire.Num `json:"density"`
 	Exponent   []wire.Num `json:"exponent"`
 	Occupation []wire.Num `json:"occupation"`
-	Pull       []wire.Num `json:"pull"` // log10 of fitness over its mean
+	Pull       []wire.Num `json:"pull"`           // log10 of fitness over its mean
+	Fitness    []wire.Num `json:"fitness"`        // exp(-beta eps), falling
+	OfFitness  []wire.Num `json:"fitnessDensity"` // p/(beta fitness); both empty at sharpness 0
 	Beta       []wire.Num `json:"beta"`
 	BetaMu     []wire.Num `json:"betaMuOver"`
 	Levels     []Level    `json:"levels"` // of a discrete law
@@ -185,6 +187,11 @@ func curvesOf(l law.Law, beta float64, rule bose.Rule, s bose.Solution) *Curves 
 	pull := func(e float64) wire.Num { return wire.Num((-beta*e - math.Log(s.MeanFitness)) / math.Ln10) }
 	for _, e := range c.Eps {
 		out.Pull = append(out.Pull, pull(e))
+	}
+	for i, e := range c.Eps {
+		if f := math.Exp(-beta * e); f > 0 && beta > 0 && len(c.Density) > i {
+			out.Fitness, out.OfFitness = append(out.Fitness, wire.Num(f)), append(out.OfFitness, wire.Num(c.Density[i]/(beta*f)))
+		}
 	}
 	if levels, ok := l.(law.Leveled); ok {
 		energy, weight := levels.Levels()

@@ -132,3 +132,27 @@ func FuzzHandle(f *testing.F) {
 		}
 	})
 }
+
+func TestLawsAlone(t *testing.T) {
+	var e Engine
+	ask := func(kind, body string) string {
+		return string(e.Handle(wire.Packet{ID: 1, Kind: kind, Body: []byte(body)}, func(float64, string) error { return nil }).Body)
+	}
+	for body, want := range map[string]string{
+		`{"law":{"family":"formula","density":"e*(2-","top":2}}`:       `{"at":6,"fault":"The formula cannot be read, at character 6: the formula ends too early."}`,
+		`{"law":{"family":"formula","density":"e-1","top":2}}`:         `"at":0,"fault":"The density is negative`,
+		`{"law":{"family":"drawn","knots":[[0,1],[1,0,2]]}}`:           `knot 2 has 3 numbers`,
+		`{"law":{"family":"drawn","knots":[[0,1],[1,0]],"theta":1}}`:   `no field \"theta\"`,
+		`{"law":{"family":"power","theta":1,"knots":[[0,1],[1,0]]}}`:   `no field \"knots\"`,
+		`{"law":{"family":"drawn","knots":[[0,1],[1,0]]}}`:             `{"law":{"family":"drawn","knots":[[0,1],[1,0]]}}`,
+		`{"law":{"family":"formula","density":"e * (2 - e)","top":2}}`: `"density":"e * (2 - e)"`,
+		`{"law":{"family":"formula","density":""}}`:                    `The formula is empty`,
+	} {
+		if got := ask("law", body); !strings.Contains(got, want) {
+			t.Errorf("%s: %s, want %s", body, got, want)
+		}
+	}
+	if got := ask("sketch", `{"casebook":{"casebook":1,"entries":[{"law":{"family":"power","theta":1}}]},"entry":0}`); got != `{"knots":[[0,0],[1,2]]}` {
+		t.Errorf("a straight law is sketched as %s", got)
+	}
+}
