@@ -56,8 +56,8 @@ var Families = []Family{
 
 // Shaped lists the laws that are made of more than numbers in a range: levels, knots, an expression.
 var Shaped = []Family{
-	{Name: "tiers", Title: "Levels", Formula: "a few energies, each with its weight", Help: "members come in a few grades; the fittest grade holds an atom, so never a condensate", Listed: true},
-	{Name: "drawn", Title: "Drawn", Formula: "straight lines from knot to knot", Help: "a density drawn by hand, normalised by the program", Listed: true},
+	{Name: "tiers", Title: "Levels", Formula: "a few energies, each with its weight", Help: "members come in a few grades; the fittest grade holds an atom, so never a condensate", Listed: true, Fields: []Field{}},
+	{Name: "drawn", Title: "Drawn", Formula: "straight lines from knot to knot", Help: "a density drawn by hand, normalised by the program", Listed: true, Fields: []Field{}},
 	{Name: "formula", Title: "Formula", Formula: "p(ε) in proportion to a formula in e", Help: "a density written in the energy e, on 0 to an end", Listed: true,
 		Fields: []Field{{Name: "top", Label: "Ends at energy", Low: 0, High: 1e6, Open: true, Slide: [2]float64{0.1, 10}, Step: 0.1, Default: 2, Help: "the density is 0 beyond"}}},
 }

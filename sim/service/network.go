@@ -119,9 +119,10 @@ type Curves struct {
 
 // Level of a discrete law.
 type Level struct {
-	Eps    wire.Num `json:"eps"`
-	Weight wire.Num `json:"weight"`
-	Pull   wire.Num `json:"pull"` // log10 of fitness over its mean
+	Eps     wire.Num `json:"eps"`
+	Weight  wire.Num `json:"weight"`
+	Fitness wire.Num `json:"fitness"`
+	Pull    wire.Num `json:"pull"` // log10 of fitness over its mean
 }
 
 // solve answers with the standing of an entry.
@@ -196,7 +197,7 @@ func curvesOf(l law.Law, beta float64, rule bose.Rule, s bose.Solution) *Curves 
 	if levels, ok := l.(law.Leveled); ok {
 		energy, weight := levels.Levels()
 		for i := range energy {
-			out.Levels = append(out.Levels, Level{wire.Num(energy[i]), wire.Num(weight[i]), pull(energy[i])})
+			out.Levels = append(out.Levels, Level{wire.Num(energy[i]), wire.Num(weight[i]), wire.Num(math.Exp(-beta * energy[i])), pull(energy[i])})
 		}
 	}
 	return out
@@ -226,6 +227,7 @@ type Leader struct {
 	ID      string  `json:"id"`
 	Share   float64 `json:"share"`
 	Energy  float64 `json:"energy"`
+	Fitness float64 `json:"fitness"` // exp(-sharpness energy)
 	Arrived int     `json:"arrived"`
 }
 
@@ -273,7 +275,7 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 	betaMu := n.BetaMu(received)
 	name := namer(c, n.From())
 	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
-		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], s.Leader}}
+		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], math.Exp(-n.Sharpness * n.Energy[s.Leader]), s.Leader}}
 	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))])
 	out.LeadChanges = path.LeadChanges()
 	if ask.Digest {

@@ -4,6 +4,7 @@ package standing
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"preponder/sim/bose"
 )
@@ -103,7 +104,7 @@ func atSize(f Facts) string {
 	case !math.IsInf(late, 1) && math.Round(math.Log10(early)) == math.Round(math.Log10(late)):
 		when = fmt.Sprintf("from about %s members on", size(late))
 	case !math.IsInf(late, 1):
-		when = fmt.Sprintf("only from somewhere between %s and %s members on", size(early), size(late))
+		when = fmt.Sprintf("only between %s and %s members", size(early), size(late))
 	}
 	short := fmt.Sprintf("%s short of", Percent(1-low))
 	if a, b := Percent(1-high), Percent(1-low); a != b && high < 1 {
@@ -130,7 +131,7 @@ func records(f Facts) string {
 func fold(x float64) string {
 	switch v := math.Exp(x); {
 	case x > math.Log(1e6):
-		return fmt.Sprintf("10 to the %.0f", x/math.Ln10)
+		return tenTo(x / math.Ln10)
 	case v >= 100:
 		return size(v)
 	default:
@@ -138,10 +139,16 @@ func fold(x float64) string {
 	}
 }
 
+// tenTo writes a power of ten, its exponent rounded.
+func tenTo(x float64) string {
+	raised := strings.NewReplacer("-", "⁻", "0", "⁰", "1", "¹", "2", "²", "3", "³", "4", "⁴", "5", "⁵", "6", "⁶", "7", "⁷", "8", "⁸", "9", "⁹")
+	return "10" + raised.Replace(fmt.Sprintf("%.0f", x))
+}
+
 // size writes a number of members: to two digits above 100,000, as a power of ten above a thousand million.
 func size(n float64) string {
 	if n > 1e9 {
-		return fmt.Sprintf("10 to the %.0f", math.Log10(n))
+		return tenTo(math.Log10(n))
 	}
 	if n > 1e5 {
 		unit := math.Pow(10, math.Floor(math.Log10(n))-1)
@@ -188,5 +195,5 @@ func times(x float64) string {
 	case x < 1e6:
 		return fmt.Sprintf("%.0f,000-fold", math.Round(x/1e3))
 	}
-	return fmt.Sprintf("by a factor of 10 to the %.0f", math.Round(math.Log10(x)))
+	return "by a factor of " + tenTo(math.Log10(x))
 }

@@ -45,8 +45,8 @@ func TestAtSize(t *testing.T) {
 		want string
 	}{
 		{law.Power{Theta: 1}, 1, 20000, ""},
-		{law.Power{Theta: 1}, 3, 20000, "At the planned 20,000 members the pull is still 19 % to 34 % short of its value in endless growth; theory is within 10 % only from somewhere between 10 to the 12 and 10 to the 15 members on. For your size, go by the outlook."},
-		{drawn, 3, 20000, "On paper only: up to the planned size it behaves like a condensate, and the fittest still gain share. At the planned 20,000 members the pull is still 19 % to 34 % short of its value in endless growth; theory is within 10 % only from somewhere between 10 to the 12 and 10 to the 15 members on. For your size, go by the outlook."},
+		{law.Power{Theta: 1}, 3, 20000, "At the planned 20,000 members the pull is still 19 % to 34 % short of its value in endless growth; theory is within 10 % only between 10¹² and 10¹⁵ members. For your size, go by the outlook."},
+		{drawn, 3, 20000, "On paper only: up to the planned size it behaves like a condensate, and the fittest still gain share. At the planned 20,000 members the pull is still 19 % to 34 % short of its value in endless growth; theory is within 10 % only between 10¹² and 10¹⁵ members. For your size, go by the outlook."},
 		{law.Lognormal{Sigma: 1}, 1, 5000, "Among 5,000 members the fittest is expected at 38 times the middle fitness (24 to 83 in 95 of 100 networks), and about 9 of them were fitter than all before. The outlook shows how large a share that brings."},
 	} {
 		rule := bose.Rule{Links: 2}

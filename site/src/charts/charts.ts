@@ -18,42 +18,89 @@ function tone(pull: number): string {
 const decades = (low: number, high: number): number[] => Array.from({ length: 9 }, (_, i) => 10 ** i).filter((d) => d >= low && d <= high && (high < 1e6 || Math.log10(d) % 2 === Math.floor(Math.log10(high)) % 2));
 const points = (x: number[], y: (number | null)[]): Point[] => x.flatMap((v, i) => { const w = y[i]; return finite(w) ? [{ x: v, y: w }] : []; });
 
-/** p(eps), its area in the colours of the disc; the leader's place. */
-export function density(c: Curves, leader: { id: string; energy: number } | undefined, held: Curves | undefined, width: number): Element {
+export type AxisOf = "energy" | "fitness";
+
+interface Height { x: number; y: number; pull: number | null }
+
+/** Area under a law in the colours of the disc: neighbours of one colour are one area, with a hair's stroke so that no seam
+ * shows. */
+function area(p: Plane, law: readonly Height[], top: number): void {
+  let band: { x: number; low: number; high: number }[] = [];
+  let fill = "";
+  for (const q of law) {
+    const at = { x: q.x, low: 0, high: Math.min(q.y, top) };
+    const next = tone(q.pull ?? 0);
+    if (next !== fill) {
+      if (band.length > 0) p.area([...band, at], { fill, stroke: fill, width: 0.6 });
+      band = [];
+      fill = next;
+    }
+    band.push(at);
+  }
+  p.area(band, { fill, stroke: fill, width: 0.6 });
+}
+
+export interface LeaderMark { id: string; energy: number; fitness: number }
+
+function leaderMark(p: Plane, x: number, id: string, top: number, late: boolean): void {
+  p.upright(x, { stroke: ember, width: 2 });
+  p.text({ x, y: top }, id, { dy: -9, fill: emberText, weight: 600, anchor: late ? "end" : "start" });
+}
+
+/** The density over energies or fitness, its area in the colours of the disc; the leader's place. */
+export function density(c: Curves, leader: LeaderMark | undefined, held: Curves | undefined, axis: AxisOf, width: number): Element {
+  const byFitness = axis === "fitness";
   const discrete = c.levels.length > 0;
-  const law = discrete ? c.levels.map((l) => ({ x: l.eps, y: l.weight })) : points(c.eps, c.density);
+  const heights = (of: Curves): Height[] => {
+    const x = byFitness ? of.fitness : of.eps, y = byFitness ? of.fitnessDensity : of.density;
+    const all = (x ?? []).flatMap((v, i) => { const w = y?.[i]; return finite(w) ? [{ x: v, y: w, pull: of.pull?.[i] ?? 0 }] : []; });
+    return byFitness ? all.reverse() : all;
+  };
+  const law = discrete ? c.levels.map((l) => ({ x: byFitness ? l.fitness : l.eps, y: l.weight, pull: l.pull })).sort((a, b) => a.x - b.x) : heights(c);
   const low = law[0]?.x ?? 0, high = law.at(-1)?.x ?? 1;
   const middle = law[Math.floor(law.length / 2)]?.y ?? 1;
-  const most = Math.max(...(discrete ? law : law.slice(1)).map((p) => p.y));
-  const top = discrete ? most * 1.15 : Math.min(most, 4 * middle + 4); // an edge that goes to infinity is cut
+  const most = Math.max(...(discrete ? law : law.slice(1, -1)).map((p) => p.y));
+  const top = 1.08 * (discrete ? most : Math.min(most, 4 * middle + 4)); // an edge that goes to infinity is cut
   const spare = discrete ? 0.04 * (high - low || 1) : 0;
-  const p = new Plane({ width, height: 170, margin: { left: 8, right: 10, bottom: 38, top: 22 }, x: { domain: [Math.min(0, low) - spare, (high > low ? high : low + 1) + spare], ticks: 5 }, y: { domain: [0, top * 1.08], hidden: true } });
+  const p = new Plane({ width, height: 170, margin: { left: 8, right: 10, bottom: 38, top: 22 }, x: { domain: [Math.min(0, low) - spare, byFitness ? Math.max(1, high) + spare : (high > low ? high : low + 1) + spare], ticks: 5 }, y: { domain: [0, top], hidden: true } });
   if (discrete) {
-    for (const l of c.levels) p.upright(l.eps, { stroke: tone(l.pull ?? 0), width: 6 }, [0, l.weight]);
+    for (const l of law) p.upright(l.x, { stroke: tone(l.pull ?? 0), width: 6 }, [0, l.y]);
   } else {
-    // Neighbours of one colour are one area, with a hair's stroke so that no seam shows.
-    let band: { x: number; low: number; high: number }[] = [];
-    let fill = "";
-    law.forEach((q, i) => {
-      const at = { x: q.x, low: 0, high: Math.min(q.y, top * 1.08) };
-      const next = tone(c.pull?.[i] ?? 0);
-      if (next !== fill) {
-        if (band.length > 0) p.area([...band, at], { fill, stroke: fill, width: 0.6 });
-        band = [];
-        fill = next;
-      }
-      band.push(at);
-    });
-    p.area(band, { fill, stroke: fill, width: 0.6 });
-    if (held && held.levels.length === 0) p.line(points(held.eps, held.density).map((q) => ({ x: q.x, y: Math.min(q.y, top * 1.08) })).filter((q) => q.x <= high), dashed);
-    p.line(law.map((q) => ({ x: q.x, y: Math.min(q.y, top * 1.08) })), { stroke: ink });
+    area(p, law, top);
+    if (held && held.levels.length === 0) p.line(heights(held).map((q) => ({ x: q.x, y: Math.min(q.y, top) })).filter((q) => q.x <= high), dashed);
+    p.line(law.map((q) => ({ x: q.x, y: Math.min(q.y, top) })), { stroke: ink });
   }
-  if (leader && leader.energy <= high) {
-    p.upright(leader.energy, { stroke: ember, width: 2 });
-    p.text({ x: leader.energy, y: top * 1.08 }, leader.id, { dy: -9, fill: emberText, weight: 600, anchor: leader.energy > (low + high) / 2 ? "end" : "start" });
-  }
-  p.foot("fittest", "start", quiet).foot("energy ε", "middle", quiet).foot("least fit", "end", quiet);
+  const at = byFitness ? leader?.fitness : leader?.energy;
+  if (leader && at !== undefined && at <= high) leaderMark(p, at, leader.id, top, at > (low + high) / 2);
+  if (byFitness) p.foot("least fit", "start", quiet).foot("fitness η = exp(−βε)", "middle", quiet).foot("fittest", "end", quiet);
+  else p.foot("fittest", "start", quiet).foot("energy ε", "middle", quiet).foot("least fit", "end", quiet);
   return p.axes();
+}
+
+/** What of a drawn law is on show: the largest energy, and the largest density in the user's own units. */
+export interface Frame { high: number; top: number }
+
+/** A drawn law in the user's own units, for its knots to be moved on: lines from knot to knot over the colours of the disc. */
+export function drawn(knots: readonly (readonly [number, number])[], c: Curves | undefined, leader: LeaderMark | undefined, frame: Frame, width: number): Plane {
+  const p = new Plane({ width, height: 190, margin: { left: 12, right: 14, bottom: 38, top: 22 }, x: { domain: [0, frame.high], ticks: 5 }, y: { domain: [0, frame.top], hidden: true } });
+  // The program counts energies from the first knot that is not part of a stretch without members.
+  const start = knots.findIndex((k, i) => k[1] > 0 || (knots[i + 1]?.[1] ?? 0) > 0);
+  const origin = knots[start]?.[0] ?? 0;
+  const height = (x: number): number => {
+    const i = knots.findIndex((k) => k[0] >= x);
+    const a = knots[i - 1], b = knots[i];
+    return !b ? 0 : !a ? b[1] : a[1] + ((b[1] - a[1]) * (x - a[0])) / (b[0] - a[0]);
+  };
+  if (c?.pull) {
+    const places = [...c.eps.map((e, i) => ({ x: e + origin, pull: c.pull?.[i] ?? 0 })), ...knots.map((k) => ({ x: k[0], pull: null }))].sort((a, b) => a.x - b.x);
+    let pull = c.pull[0] ?? 0;
+    area(p, places.filter((q) => q.x >= origin).map((q) => ({ x: q.x, y: height(q.x), pull: q.pull === null ? pull : (pull = q.pull) })), frame.top);
+  }
+  p.line(knots.map(([x, y]) => ({ x, y })), { stroke: ink });
+  if (leader && leader.energy + origin <= frame.high) leaderMark(p, leader.energy + origin, leader.id, frame.top, leader.energy + origin > frame.high / 2);
+  p.foot("fittest", "start", quiet).foot("energy ε", "middle", quiet).foot("least fit", "end", quiet);
+  p.axes();
+  return p;
 }
 
 const small = { width: 0, height: 132, margin: { left: 34, right: 14, bottom: 22, top: 10 } };
@@ -117,9 +164,8 @@ export function potential(s: Solved, sharpness: number, width: number): Element 
 }
 
 /** Margin gauge: sharpness on its way to the critical point and beyond. */
-export function gauge(s: Solved, sharpness: number, width: number): Element | undefined {
+export function gauge(s: Solved, sharpness: number, end: number, width: number): Element | undefined {
   if (!finite(s.criticalSharpness)) return undefined;
-  const end = Math.max(2 * s.criticalSharpness, sharpness * 1.1);
   const p = new Plane({ width, height: 54, margin: { left: 6, right: 6, bottom: 20, top: 20 }, x: { domain: [0, end], ticks: 4 }, y: { domain: [0, 1], hidden: true } });
   p.band(s.criticalSharpness, end, { fill: css("r6"), opacity: 0.55 }, [0.2, 0.8]);
   p.across(0.5, { stroke: css("control") }).upright(s.criticalSharpness, { stroke: ink });

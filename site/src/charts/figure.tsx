@@ -1,6 +1,7 @@
 // A chart with its title, its summary in words and its table.
 import type { JSX } from "preact";
 import { useLayoutEffect, useRef, useState } from "preact/hooks";
+import { planeOf } from "./plane";
 
 export interface Table {
   columns: string[];
@@ -16,6 +17,7 @@ export interface FigureProps {
   draw: (width: number) => Element | undefined;
   of: readonly unknown[]; // what the chart is drawn from: it is drawn again when one of these is another
   class?: string;
+  onPoint?: (x: number, phase: "begin" | "move" | "end") => void; // something is set by pointing at the chart
   every?: number; // drawn at most this often, in ms; the last state is always drawn
 }
 
@@ -57,6 +59,21 @@ async function png(f: { text: string; width: number; height: number }): Promise<
   canvas.height = f.height * density;
   canvas.getContext("2d")?.drawImage(image, 0, 0, canvas.width, canvas.height);
   return new Promise((resolve, reject) => canvas.toBlob((b) => (b ? resolve(b) : reject(new Error("no picture"))), "image/png"));
+}
+
+/** Handlers for a chart on which something is set: press, drag, let go. */
+function pointing(on: NonNullable<FigureProps["onPoint"]>): Record<string, (e: PointerEvent) => void> {
+  const at = (e: PointerEvent): number | undefined => {
+    const box = e.currentTarget as HTMLElement;
+    return planeOf(box.firstElementChild)?.valueAt(e.clientX - box.getBoundingClientRect().left);
+  };
+  const tell = (phase: "begin" | "move" | "end") => (e: PointerEvent) => {
+    const x = at(e);
+    if (x === undefined || (phase === "move" && e.buttons === 0)) return;
+    if (phase === "begin") (e.currentTarget as HTMLElement).setPointerCapture(e.pointerId);
+    on(x, phase);
+  };
+  return { onPointerDown: tell("begin"), onPointerMove: tell("move"), onPointerUp: tell("end"), onPointerCancel: tell("end") };
 }
 
 export function Figure(p: FigureProps): JSX.Element {
@@ -110,7 +127,7 @@ export function Figure(p: FigureProps): JSX.Element {
       <figcaption>
         <strong>{p.title}</strong>
       </figcaption>
-      <div ref={ref} class="chart" role="img" aria-label={`${p.title}. ${p.summary}`} />
+      <div ref={ref} class="chart" data-points={p.onPoint ? "" : undefined} {...(p.onPoint && pointing(p.onPoint))} role="img" aria-label={`${p.title}. ${p.summary}`} />
       {p.note && <p class="caption">{p.note}</p>}
       <details onToggle={(e) => setOpen(e.currentTarget.open)}>
         <summary aria-label={`Table: ${p.title}`}>Table</summary>

@@ -55,6 +55,11 @@ function plain(step: number): (v: number) => string {
 
 const formats = new Map<number, (v: number) => string>();
 
+const planes = new WeakMap<Element, Plane>();
+
+/** The plane a chart was drawn on. */
+export const planeOf = (chart: Element | null | undefined): Plane | undefined => (chart ? planes.get(chart) : undefined);
+
 export class Plane {
   readonly svg: SVGElement;
   private readonly left: number;
@@ -68,6 +73,7 @@ export class Plane {
     this.top = o.margin.top;
     this.bottom = o.height - o.margin.bottom;
     this.svg = element("svg", { width: o.width, height: o.height, viewBox: `0 0 ${o.width} ${o.height}`, fill: "currentColor", "font-family": "inherit", "font-size": "11.5px", overflow: "visible" });
+    planes.set(this.svg, this);
   }
 
   private place(v: number, a: Axis, from: number, to: number): number {
@@ -84,6 +90,12 @@ export class Plane {
     const [low, high] = this.o.x.domain;
     const t = Math.max(0, Math.min(1, (px - this.left) / (this.right - this.left)));
     return this.o.x.log ? low * (high / low) ** t : low + t * (high - low);
+  }
+
+  /** What lies at a place on the y axis. */
+  heightAt(px: number): number {
+    const [low, high] = this.o.y.domain;
+    return low + Math.max(0, Math.min(1, (this.bottom - px) / (this.bottom - this.top))) * (high - low);
   }
 
   private put(name: string, attributes: Attributes): this {

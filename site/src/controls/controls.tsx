@@ -96,6 +96,33 @@ export function Slider(p: SliderProps): JSX.Element {
   );
 }
 
+/** A number in a table. What cannot be is said, and the last good value comes back. */
+export function NumberCell(p: { label: string; value: number; low: number; high: number; open?: boolean; strict?: boolean; onChange: (v: number) => void }): JSX.Element {
+  const id = useId();
+  const [text, setText] = useState<string | undefined>(undefined);
+  const [fault, setFault] = useState<string | undefined>(undefined);
+  const enter = (raw: string): void => {
+    setText(raw);
+    const v = Number(raw.replace(/,/g, "").replace("−", "-"));
+    const low = p.open || p.strict ? v > p.low : v >= p.low, high = p.strict ? v < p.high : v <= p.high;
+    if (raw.trim() === "" || !Number.isFinite(v)) setFault(`“${raw}” is not a number.`);
+    else if (!low || !high) setFault(`It must be ${p.open || p.strict ? "above" : "at least"} ${p.low.toLocaleString("en")} and ${p.strict ? "below" : "at most"} ${p.high.toLocaleString("en")}.`);
+    else {
+      setFault(undefined);
+      p.onChange(v);
+    }
+  };
+  return (
+    <>
+      <input
+        type="text" inputMode="decimal" autocomplete="off" aria-label={p.label} value={text ?? String(Number(p.value.toPrecision(6)))} aria-invalid={fault ? "true" : undefined} aria-describedby={fault ? id : undefined}
+        onInput={(e) => enter(e.currentTarget.value)} onBlur={() => { setText(undefined); setFault(undefined); }}
+      />
+      {fault && <span class="fault" role="alert" id={id}>{fault}</span>}
+    </>
+  );
+}
+
 export function Check(p: { label: string; value: boolean; help?: string; onChange: (v: boolean) => void }): JSX.Element {
   const id = useId();
   return (

@@ -22,6 +22,8 @@ export interface AskOptions {
   columns?: Column[];
   progress?: (p: Progress) => void;
   signal?: AbortSignal;
+  /** Requests that take one another's place, where that is not all of their kind. */
+  slot?: string;
 }
 
 /** A reply: its head's body, its columns, and the bytes it came in. */
@@ -121,8 +123,9 @@ export class Engine {
   /** Like ask, but of one kind only one request runs and one waits; a newer one takes the place of the one waiting. A body
    * that is a function is called when its turn comes. */
   async askNewest<T>(kind: string, body: unknown, options: AskOptions = {}): Promise<Reply<T> | undefined> {
-    let slot = this.newest.get(kind);
-    if (!slot) this.newest.set(kind, (slot = { running: false }));
+    const name = options.slot ?? kind;
+    let slot = this.newest.get(name);
+    if (!slot) this.newest.set(name, (slot = { running: false }));
     const mine = slot;
     if (mine.running) {
       mine.drop?.();

@@ -10,7 +10,8 @@ import { theme } from "../state/view";
 import { number } from "../words/format";
 import { Brief } from "../sections/brief";
 import { EvidenceBlock } from "../sections/evidence";
-import { LawSection, LeversSection, OutlookSection, SharesSection, StandingSection } from "../sections/sections";
+import { LawSection } from "../sections/law";
+import { LeversSection, OutlookSection, SharesSection, StandingSection } from "../sections/sections";
 
 function Mark(p: { image: ImageData | undefined; size: number }): JSX.Element {
   const ref = useRef<HTMLCanvasElement>(null);

@@ -9,7 +9,8 @@ import { addressWith, fromFile } from "../state/storage";
 import type { Entry } from "../state/types";
 import { count, number, percent, range } from "../words/format";
 import { evidenceWords, Origin } from "./evidence";
-import { outlookOf, Section } from "./sections";
+import { Section } from "./section";
+import { outlookOf } from "./sections";
 
 export const preparedFor = signal("");
 /** The picture for paper, as a data address, and the code of the casebook. */

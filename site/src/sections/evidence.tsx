@@ -7,7 +7,7 @@ import { effect, signal } from "@preact/signals";
 import { engines } from "../state/results";
 import type { Evidence, EvidenceMember } from "../state/types";
 import { count, number, percent, range } from "../words/format";
-import { Section } from "./sections";
+import { Section } from "./section";
 
 /** Heading and meaning of the evidence, made by the engine from what the casebook keeps. */
 export const evidenceWords = signal<{ heading: string; meaning: string; explained: string } | undefined>(undefined);

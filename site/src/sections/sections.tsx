@@ -1,90 +1,49 @@
 // The sections of the unfolded entry.
 import { signal } from "@preact/signals";
-import type { ComponentChildren, JSX } from "preact";
-import { useEffect } from "preact/hooks";
-import { density, exponent, fan, gauge, occupation, potential, shares } from "../charts/charts";
+import type { JSX } from "preact";
+import { useEffect, useState } from "preact/hooks";
+import { exponent, fan, gauge, occupation, potential, shares } from "../charts/charts";
 import { Figure } from "../charts/figure";
 import { Check, Progress, Slider } from "../controls/controls";
-import { beginDrag, doc, editEntry, endDrag, tables } from "../state/document";
+import { doc, editEntry, tables } from "../state/document";
 import { cancelGrowth, cancelOutlook, growAnyway, outlookKey, runOutlook } from "../state/edges";
-import { fault, grown, growing, held, outlookFault, outlooks, running, solved, waitingToGrow } from "../state/results";
+import { fault, grown, growing, held, outlookFault, outlooks, reached, running, solved, waitingToGrow } from "../state/results";
 import { projection } from "../state/document";
-import type { Entry, Outlook, Solved } from "../state/types";
+import type { Entry, Outlook } from "../state/types";
 import { quick } from "../state/view";
 import { count, number, percent, seconds } from "../words/format";
+import { begin, end, Section, standing } from "./section";
 
-const begin = (): void => { beginDrag(); quick.value = true; };
-const end = (): void => { endDrag(); quick.value = false; };
-
-export function Section(p: { id: string; title: string; aside?: ComponentChildren; children: ComponentChildren }): JSX.Element {
-  return (
-    <section id={p.id} aria-labelledby={`${p.id}-title`}>
-      <header><h3 id={`${p.id}-title`}>{p.title}</h3>{p.aside && <span class="aside">{p.aside}</span>}</header>
-      {p.children}
-    </section>
-  );
-}
-
-const standing = (): Solved | undefined => solved.value?.value;
 const setGrowth = (g: Partial<Entry["growth"]>): void => editEntry((e) => ({ ...e, growth: { ...e.growth, ...g } }));
 
-export function LawSection(p: { entry: Entry }): JSX.Element | null {
-  const t = tables.value;
-  const s = standing();
-  if (!t) return null;
-  const { law } = p.entry;
-  const family = t.families.find((f) => f.name === law.family);
-  const choose = (name: string): void => {
-    const f = t.families.find((x) => x.name === name);
-    editEntry((e) => ({ ...e, law: f ? { family: name, ...Object.fromEntries(f.fields.map((x) => [x.name, x.default])) } : { family: name } }));
+/** Sharpness set by pointing at a chart over sharpness; close to the critical point it takes just that. */
+function pointSharpness(critical: number | null, width: number, hold: (width: number | undefined) => void): (x: number, phase: "begin" | "move" | "end") => void {
+  return (x, phase) => {
+    if (phase === "begin") {
+      hold(width); // the axis stands still while something is dragged along it
+      begin();
+    }
+    const near = critical !== null && Math.abs(x - critical) < width * 0.012;
+    const v = near ? critical : Math.round(x * 100) / 100;
+    if (phase !== "end") editEntry((e) => ({ ...e, sharpness: Math.max(0, v) }));
+    else {
+      hold(undefined);
+      end();
+    }
   };
-  const leader = grown.value?.value.leader;
-  const mean = s?.curves?.eps;
-  return (
-    <Section id="law" title="Fitness law" aside={family?.formula ?? (law.family === "evidence" ? "read from the log" : "discrete levels")}>
-      {s?.curves && (
-        <Figure
-          title="Density of energies p(ε)" name="law" class="plain"
-          summary={`Energies from ${number(mean?.[0] ?? 0)} to ${number(mean?.at(-1) ?? 0)}; the fittest have energy 0. ${leader ? `The leader ${leader.id} has energy ${number(leader.energy)}.` : ""}`}
-          of={[s.curves, leader?.id, leader?.energy, held.value]} draw={(w) => density(s.curves!, leader, held.value?.curves, w)}
-          table={() => ({ columns: ["energy", "density"], rows: s.curves!.eps.map((e, i) => [e, s.curves!.density[i] ?? 0]) })}
-        />
-      )}
-      <div class="chips" role="group" aria-label="Family of the law">
-        {t.families.filter((f) => f.listed).map((f) => (
-          <button type="button" key={f.name} aria-pressed={f.name === law.family} title={f.help} onClick={() => choose(f.name)}>{f.title}</button>
-        ))}
-        {doc.value?.book.evidence?.law ? <button type="button" aria-pressed={law.family === "evidence"} onClick={() => choose("evidence")}>From the log</button> : null}
-      </div>
-      {family?.fields.map((f) => (
-        <Slider
-          key={f.name} label={f.label} value={Number(law[f.name] ?? f.default)} low={f.low} high={f.high} slide={f.slide} step={f.step} open={f.open} help={f.help} onBegin={begin} onEnd={end}
-          onChange={(v) => editEntry((e) => ({ ...e, law: { ...e.law, [f.name]: v } }))}
-        />
-      ))}
-      <Slider
-        label="Sharpness β" value={p.entry.sharpness} low={0} high={t.limits.sharpness} slide={[0, 10]} step={0.05} help="how hard newcomers compare fitness; 0 is not at all" onBegin={begin} onEnd={end}
-        onChange={(v) => editEntry((e) => ({ ...e, sharpness: v }))}
-      />
-      <Slider
-        label="Links a newcomer m" value={p.entry.growth.links} low={1} high={t.limits.links} slide={[1, 12]} step={1} help="made by each newcomer, on average" onBegin={begin} onEnd={end}
-        onChange={(v) => setGrowth({ links: v })}
-      />
-      <Slider
-        label="Members" value={p.entry.growth.members} low={2} high={t.limits.members} slide={[100, 1_000_000]} step={1} log whole help="today's size" onBegin={begin} onEnd={end}
-        onChange={(v) => setGrowth({ members: v })}
-      />
-      <Slider label="Seed" value={p.entry.growth.seed} low={0} high={4294967295} slide={[1, 50]} step={1} whole help="another seed is another history of the same rule" onBegin={begin} onEnd={end} onChange={(v) => setGrowth({ seed: v })} />
-    </Section>
-  );
 }
 
 export function StandingSection(p: { entry: Entry }): JSX.Element | null {
   const s = standing();
   const g = grown.value?.value;
   const h = held.value;
+  const [axisHeld, holdAxis] = useState<number | undefined>(undefined);
   if (!s) return <Section id="standing" title="Standing"><p>{fault.value ?? "Computing…"}</p></Section>;
   const sharp = p.entry.sharpness;
+  const critical = s.criticalSharpness;
+  const atSize = s.verdict.atSize || (reached.value?.key === solved.value?.key ? reached.value?.value : "");
+  const gaugeEnd = axisHeld ?? (critical === null ? 0 : Math.max(2 * critical, sharp * 1.1));
+  const mostBeta = s.curves?.beta?.at(-1) ?? 10;
   return (
     <Section
       id="standing" title="Standing"
@@ -92,33 +51,46 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
     >
       {fault.value && <p class="fault" role="alert">{fault.value}</p>}
       <p class="verdict" aria-live="polite"><strong>{s.verdict.heading}.</strong> {s.verdict.line} {s.verdict.reason}</p>
+      {atSize && <p class="says">{atSize}</p>}
       {s.criticalSharpness !== null && (
         <Figure
           title="Margin" name="margin" class="plain" summary={`Margin ${number(s.margin)}: ${s.verdict.margin}. A condensate forms where it is below 1, above sharpness ${number(s.criticalSharpness)}.`}
-          of={[s, sharp]} draw={(w) => gauge(s, sharp, w)} table={() => ({ columns: ["quantity", "value"], rows: [["sharpness", sharp], ["critical sharpness", s.criticalSharpness ?? ""], ["margin", s.margin ?? "infinite"]] })}
+          of={[s, sharp]} draw={(w) => gauge(s, sharp, gaugeEnd, w)} onPoint={pointSharpness(critical, gaugeEnd, holdAxis)} table={() => ({ columns: ["quantity", "value"], rows: [["sharpness", sharp], ["critical sharpness", s.criticalSharpness ?? ""], ["margin", s.margin ?? "infinite"]] })}
         />
       )}
+      {critical !== null && <p class="buttons"><button type="button" disabled={sharp === critical} onClick={() => editEntry((e) => ({ ...e, sharpness: critical }))}>Go to the critical sharpness {number(critical)}</button></p>}
       <dl class="pairs">
         <div><dt>Chemical potential μ</dt><dd>{s.regime === "records" ? "none" : sharp === 0 ? "−∞" : number(s.mu ?? 0)} <small>{s.condensate > 0 ? "at the ground level" : "in endless growth"}</small></dd></div>
         <div><dt>μ at this size</dt><dd>{sharp === 0 ? "−∞" : number(g?.muAtSize, "not yet")} <small>counted at {count(g?.members ?? 0)}</small></dd></div>
         <div><dt>Condensate, endless growth</dt><dd>{percent(s.condensate)} <small>of all links</small></dd></div>
-        <div><dt>Margin</dt><dd>{number(s.margin)} <small>condensate below 1</small></dd></div>
+        <div><dt>Margin</dt><dd>{number(s.margin, s.regime === "records" ? "none" : "∞")} <small>condensate below 1</small></dd></div>
       </dl>
-      <div class="trio">
+      <details class="figures">
+        <summary>More figures</summary>
+        <dl class="pairs">
+          <div><dt>Ground integral I(0)</dt><dd>{number(s.groundIntegral)} <small>balance {number(s.balance)}</small></dd></div>
+          <div><dt>dμ/dβ</dt><dd>{number(s.muSlope, "none")}</dd></div>
+          <div><dt>Leader's share grows as</dt><dd>{s.leaderExponent === null ? "no power" : <>N^{number(s.leaderExponent)}</>} <small>{s.halving === null ? "" : `halves every ${number(s.halving)}-fold`}</small></dd></div>
+          <div><dt>Degree exponent</dt><dd>{number(s.degreeExponent, "none")} <small>of the tail</small></dd></div>
+          <div><dt>Mean fitness</dt><dd>{number(s.meanFitness, "none")} <small>the fittest have 1</small></dd></div>
+          <div><dt>Estimated relative error</dt><dd>{number(Math.max(s.errors.groundIntegral ?? 0, s.errors.mu ?? 0), "unknown")} <small>of these figures</small></dd></div>
+        </dl>
+      </details>
+      {s.regime !== "records" && <div class="trio">
         <Figure
           title="Growth rate f(ε)" name="growth-rate" summary="The exponent with which a member's tickets grow, falling with energy." of={[s, g, h]} draw={(w) => exponent(s, g, h, w)}
           table={() => ({ columns: ["energy", "f"], rows: (s.curves?.eps ?? []).map((e, i) => [e, s.curves?.exponent?.[i] ?? ""]) })}
         />
         <Figure
           title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network at its full size, with one standard error.`} of={[s, g, h]} draw={(w) => occupation(s, g, h, w)}
-          table={() => ({ columns: ["energy", "counted n", "standard error", "members"], rows: (g?.counted ?? []).map((c) => [c.eps, c.n, c.error, c.members]) })}
+          table={() => ({ columns: ["energy", "n of the theory", "counted n", "standard error", "members"], rows: [...(g?.counted ?? []).map((c) => [c.eps, "", c.n, c.error, c.members]), ...(s.curves?.eps ?? []).map((e, i) => [e, s.curves?.occupation?.[i] ?? "infinite", "", "", ""])] })}
         />
         <Figure
-          title="Potential βμ over β" name="potential" summary={`Rises to 0 ${s.criticalSharpness !== null ? `at the critical sharpness ${number(s.criticalSharpness)} and stays there` : "without reaching it: this law has no critical sharpness"}.`} of={[s, sharp]} draw={(w) => potential(s, sharp, w)}
+          title="Potential βμ over β" name="potential" summary={`Rises to 0 ${s.criticalSharpness !== null ? `at the critical sharpness ${number(s.criticalSharpness)} and stays there` : "without reaching it: this law has no critical sharpness"}.`} of={[s, sharp]} draw={(w) => potential(s, sharp, w)} onPoint={pointSharpness(critical, mostBeta, () => {})}
           table={() => ({ columns: ["sharpness", "beta mu"], rows: (s.curves?.beta ?? []).map((b, i) => [b, s.curves?.betaMuOver?.[i] ?? ""]) })}
         />
-      </div>
-      <p class="caption">Circles: links counted at each level of this network at its full size. In a condensate they lie above the curve while the ground level is still filling.</p>
+      </div>}
+      {s.regime !== "records" && <p class="caption">Circles: links counted at each level of this network at its full size. In a condensate they lie above the curve while the ground level is still filling.</p>}
     </Section>
   );
 }

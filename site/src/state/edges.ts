@@ -3,7 +3,7 @@ import { batch, effect, signal } from "@preact/signals";
 import type { Reply } from "../engine/engine";
 import { column } from "../engine/wire";
 import { current, doc, isDragging, projection, say, tables } from "./document";
-import { engines, digests, fault, grown, growing, outlookFault, outlooks, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
+import { engines, digests, fault, grown, growing, outlookFault, outlooks, reached, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
 import { keep, kept } from "./storage";
 import type { Casebook, Entry, Grown, Outlook, Solved } from "./types";
 import { follow, quick, said, shown, theme } from "./view";
@@ -242,10 +242,29 @@ export function cancelOutlook(): void {
   outlookStop?.abort();
 }
 
+/** Once nothing moves: how far the planned size is from endless growth. */
+async function askReach(book: Casebook, planned: number): Promise<void> {
+  const key = keyOf(book);
+  try {
+    const r = await engines.side.askNewest<Solved>("solve", { casebook: book, entry: 0, reach: true, planned }, { slot: "reach" });
+    if (r) reached.value = { key, value: r.body.verdict.atSize };
+  } catch (e) {
+    report(e);
+  }
+}
+
 /** Starts all effects. */
 export function connect(): void {
   effect(() => ask(false));
   effect(recount);
+  let reachTimer = 0;
+  effect(() => {
+    const d = doc.value, c = current.value;
+    clearTimeout(reachTimer);
+    if (!d || !c || quick.value) return;
+    const book = projection(d.book, c.entry);
+    reachTimer = window.setTimeout(() => void askReach(book, c.entry.outlook.horizon), 250);
+  });
   let markTimer = 0;
   effect(() => {
     void doc.value;

@@ -26,6 +26,8 @@ export interface Answer<T> {
 }
 
 export const solved = signal<Answer<Solved> | undefined>(undefined);
+/** How far the planned size of the open entry is from endless growth, as a sentence; asked for when nothing moves. */
+export const reached = signal<Answer<string> | undefined>(undefined);
 export const grown = signal<Answer<Grown> | undefined>(undefined);
 /** Curves held to compare with. */
 export const held = signal<Solved | undefined>(undefined);

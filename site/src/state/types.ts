@@ -2,6 +2,8 @@
 export interface Law {
   family: string;
   tiers?: { energy: number; weight: number }[];
+  knots?: [number, number][]; // energy, density
+  density?: string;
   [field: string]: unknown;
 }
 
@@ -119,7 +121,7 @@ export interface Tables {
   demo: Casebook;
   demoOpen: number;
   newEntry: Entry;
-  limits: { members: number; links: number; sharpness: number; runs: number; rows: number; bytes: number; code: number; title: number; note: number };
+  limits: { members: number; links: number; sharpness: number; runs: number; rows: number; bytes: number; code: number; title: number; note: number; knots: number; tiers: number; formula: number };
 }
 
 export interface Verdict {
@@ -128,6 +130,7 @@ export interface Verdict {
   line: string;
   reason: string;
   margin: string;
+  atSize: string;
 }
 
 export interface Curves {
@@ -138,7 +141,9 @@ export interface Curves {
   pull: number[] | null;
   beta: number[] | null;
   betaMuOver: number[] | null;
-  levels: { eps: number; weight: number; pull: number | null }[];
+  fitness: number[] | null;
+  fitnessDensity: (number | null)[] | null;
+  levels: { eps: number; weight: number; fitness: number; pull: number | null }[];
 }
 
 export interface Solved {
@@ -152,6 +157,11 @@ export interface Solved {
   leaderExponent: number | null;
   halving: number | null;
   criticalSharpness: number | null;
+  meanFitness: number | null;
+  degreeExponent: number | null;
+  muSlope: number | null;
+  edge: { theta: number | null; uncertainty: number | null; atom: number };
+  errors: { groundIntegral: number | null; mu: number | null; criticalSharpness: number | null };
   dissolve: { headStart: number | null; openShare: number | null };
   verdict: Verdict;
   curves?: Curves;
@@ -161,7 +171,7 @@ export interface Grown {
   members: number;
   from: number;
   links: number;
-  leader: { id: string; share: number; energy: number; arrived: number };
+  leader: { id: string; share: number; energy: number; fitness: number; arrived: number };
   top4: number;
   hhi: number;
   gini: number;

@@ -18,6 +18,7 @@ export const zoom = signal({ zoom: 1, x: 0, y: 0 });
 export const hover = signal(-1);
 export const follow = signal(-1);
 export const quick = signal(false); // something is being dragged
+export const lawAxis = signal<"energy" | "fitness">("energy");
 export const said = signal<Said | undefined>(undefined);
 export const stageFault = signal<string | undefined>(undefined);
 export const memberReport = signal<{ member: number; report: MemberReport } | undefined>(undefined);
