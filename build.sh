@@ -12,6 +12,18 @@ modules() {
   fi
 }
 
+# need COMMAND PACKAGE...: Debian packages for what is not there.
+need() {
+  local missing=()
+  while [ $# -gt 0 ]; do
+    bash -c "$1" >/dev/null 2>&1 || missing+=("$2")
+    shift 2
+  done
+  [ ${#missing[@]} -eq 0 ] && return
+  say "installing ${missing[*]}"
+  { apt-get update -qq && DEBIAN_FRONTEND=noninteractive apt-get install -y -qq --no-install-recommends "${missing[@]}" fonts-liberation; } >/dev/null
+}
+
 wasm() { GOOS=js GOARCH=wasm go build -trimpath -buildvcs=false -ldflags "-s -w -buildid=" -o "site/build/$1.wasm" "./wasm/$1"; }
 
 build() {
@@ -28,7 +40,14 @@ build() {
 case "${1:-build}" in
   build) build ;;
   run) build && exec node site/serve.mjs ;;
-  test) exec bash site/test/run.sh ;;
-  bench) shift; build && exec node site/bench.mjs "$@" ;;
+  test)
+    need "command -v chromium" chromium "command -v gpg" gnupg "command -v pdftotext" poppler-utils "ls /usr/share/keyrings/debian-keyring.gpg" debian-keyring "python3 -c 'import mpmath' || /usr/bin/python3 -c 'import mpmath'" python3-mpmath
+    exec bash site/test/run.sh
+    ;;
+  bench)
+    shift
+    need "command -v chromium" chromium "python3 -c 'import scipy' || /usr/bin/python3 -c 'import scipy'" python3-scipy
+    build && exec node site/bench.mjs "$@"
+    ;;
   *) say "use: ./build.sh [build|run|test|bench]"; exit 2 ;;
 esac

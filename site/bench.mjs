@@ -1,7 +1,7 @@
 // ./build.sh bench: links/s native and in the browser, slider to curves and to picture, sizes. Figures of one run on one
 // machine; the ratios are what to compare.
 import { build } from "esbuild";
-import { execFileSync } from "node:child_process";
+import { execFileSync, spawnSync } from "node:child_process";
 import { readFileSync, statSync } from "node:fs";
 import { gzipSync } from "node:zlib";
 import { chromium } from "playwright-core";
@@ -18,9 +18,20 @@ for (const name of ["engine", "stage"]) {
 }
 console.log(`  preponder.html   ${(statSync(here("dist/preponder.html")).size / 1e6).toFixed(2)} MB`);
 
-console.log("solver, native (a solve with all curves)");
-const solve = execFileSync("go", ["test", "./sim/bose", "-run", "xx", "-bench", "SolveWithCurves"], { cwd: root, encoding: "utf8" });
-console.log(`  ${(Number(/(\d+) ns\/op/.exec(solve)[1]) / 1e6).toFixed(2)} ms`);
+console.log("a solve with curves of 400 points, ms: native, and the same by scipy's quad and brentq in the same run");
+const solve = execFileSync("go", ["test", "./sim/bose", "-run", "xx", "-bench", "SolveWithCurves", "-benchtime", "300x"], { cwd: root, encoding: "utf8" });
+const general = (() => {
+  for (const python of ["python3", "/usr/bin/python3"]) {
+    const r = spawnSync(python, ["-W", "ignore", "sim/bose/testdata/general.py"], { cwd: root, encoding: "utf8" });
+    if (r.status === 0) return JSON.parse(r.stdout);
+  }
+  console.log("  (python3-scipy is not installed: no comparison)");
+  return {};
+})();
+for (const [, name, ns] of solve.matchAll(/SolveWithCurves\/(\S+?)-?\d*\s+\d+\s+([\d.]+) ns\/op/g)) {
+  const ms = Number(ns) / 1e6, other = general[name];
+  console.log(`  ${name.padEnd(12)} ${ms.toFixed(2)}${other ? `, scipy ${other.toFixed(0)}, ratio ${(other / ms).toFixed(0)}` : ""}`);
+}
 
 const native = {};
 const out = execFileSync("go", ["test", "./sim/growth", "-run", "xx", "-bench", "Grow/condensate", "-benchtime", "20x"], { cwd: root, encoding: "utf8" });
@@ -58,6 +69,35 @@ for (const members of [1000, 100000, 1000000]) {
   }, { engine, members });
   const rate = (2 * members) / seconds / 1e6;
   console.log(`  ${String(members).padStart(8)} members: native growth alone ${native[members]?.toFixed(1)}, browser with its message ${rate.toFixed(1)}, ratio ${(rate / native[members]).toFixed(2)}`);
+}
+
+console.log("a solve with curves in the browser's worker, with its message, ms (median of 9)");
+const shaped = {
+  condensate: { sharpness: 3 }, "fit-get-rich": { law: { family: "power", theta: 0.2 }, sharpness: 1 }, beta: { law: { family: "beta", a: 2, b: 1.5 }, sharpness: 2 }, uniform: { law: { family: "uniform", low: 0 }, sharpness: 8 },
+  gamma: { law: { family: "gamma", shape: 0.7, scale: 1 }, sharpness: 2 }, tiers: { law: { family: "tiers", tiers: [{ energy: 0, weight: 0.1 }, { energy: 0.5, weight: 0.3 }, { energy: 2, weight: 0.6 }] }, sharpness: 3 },
+  drawn: { law: { family: "drawn", knots: [[0, 0], [0.2, 0.8], [0.4, 0.1], [0.8, 2], [1.3, 0]] }, sharpness: 3 }, "tiny ground": { law: { family: "drawn", knots: [[0, 1e-30], [0.2, 0.8], [1.3, 0]] }, sharpness: 8 },
+  formula: { law: { family: "formula", density: "e*exp(-3*e)+0.2*e^4", top: 2 }, sharpness: 3 }, kinks: { law: { family: "formula", density: "abs(e-0.3)*max(0,sin(9*e))+e^2", top: 2 }, sharpness: 3 }, lognormal: { law: { family: "lognormal", sigma: 1 }, sharpness: 2 },
+};
+for (const [name, entry] of Object.entries(shaped)) {
+  const ms = await page.evaluate(async ({ engine, entry }) => {
+    const bytes = Uint8Array.from(atob(engine), (c) => c.charCodeAt(0));
+    const script = document.getElementById("wasm-exec").textContent + "\n" + document.getElementById("worker").textContent;
+    const worker = new Worker(URL.createObjectURL(new Blob([script], { type: "text/javascript" })));
+    worker.postMessage(await WebAssembly.compile(bytes));
+    const ask = () => new Promise((resolve) => {
+      worker.onmessage = (e) => resolve(benchWire.decode(e.data));
+      worker.postMessage(benchWire.encode({ id: 1, kind: "solve", body: { casebook: { casebook: 1, entries: [entry] }, entry: 0, curves: true, columns: true }, columns: [] }));
+    });
+    const times = [];
+    for (let i = 0; i < 12; i++) {
+      const t = performance.now();
+      await ask();
+      times.push(performance.now() - t);
+    }
+    worker.terminate();
+    return times.slice(3).sort((a, b) => a - b)[4];
+  }, { engine, entry });
+  console.log(`  ${name.padEnd(12)} ${ms.toFixed(1)}`);
 }
 
 console.log("from slider input to what is seen, ms (median and 90th percentile of 15)");

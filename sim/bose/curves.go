@@ -56,19 +56,27 @@ func (s *Spectrum) Curves(beta float64, rule Rule, sol Solution) Curves {
 	if !s.leveled() {
 		s = newSpectrum(s.law, coarse)
 	}
+	step := top / muPoints
+	h := s.heat(step)
+	var by []float64    // exp(step eps) - 1: what one step does to every node
 	var past [3]float64 // ln(-beta mu) at the last three points, newest first: the next is guessed from them
 	for i := 1; i <= muPoints; i++ {
-		b := top * float64(i) / muPoints
 		mu := 0.0
-		switch {
-		case b >= sol.CriticalSharpness:
-		case i <= 3:
-			mu, _ = s.Mu(b, r)
-		default:
-			mu, _ = s.mu(b, r, 3*(past[0]-past[1])+past[2]-math.Log(b), drawnMu)
+		if i > 1 {
+			for k := len(by); k < len(h.up); k++ {
+				by = append(by, math.Expm1(step*h.eps[k]))
+			}
+			h.warm(step, by)
 		}
-		past = [3]float64{math.Log(-b * mu), past[0], past[1]}
-		c.Beta, c.Mu = append(c.Beta, b), append(c.Mu, b*mu)
+		switch {
+		case h.beta >= sol.CriticalSharpness:
+		case i <= 3:
+			mu, _ = h.potential(r, math.Log(math.Log1p(1/r)/h.beta)-1, exactMu)
+		default:
+			mu, _ = h.potential(r, 3*(past[0]-past[1])+past[2]-math.Log(h.beta), drawnMu)
+		}
+		past = [3]float64{math.Log(-h.beta * mu), past[0], past[1]}
+		c.Beta, c.Mu = append(c.Beta, top*float64(i)/muPoints), append(c.Mu, h.beta*mu)
 	}
 	return c
 }

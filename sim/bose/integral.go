@@ -17,6 +17,7 @@ import (
 // closed form from the edge of the law.
 type Spectrum struct {
 	law       law.Law
+	density   func(eps float64) float64
 	edge      law.Edge
 	lowest    float64 // nodes begin at ln eps = lowest
 	top       float64 // and end at ln eps = top
@@ -52,7 +53,10 @@ var (
 func NewSpectrum(l law.Law) *Spectrum { return newSpectrum(l, fine) }
 
 func newSpectrum(l law.Law, r rule) *Spectrum {
-	s := &Spectrum{law: l, edge: l.Edge(), rule: r, unit: 1}
+	s := &Spectrum{law: l, density: l.Density, edge: l.Edge(), rule: r, unit: 1}
+	if often, ok := l.(law.Often); ok {
+		s.density = often.Densities()
+	}
 	if levels, ok := l.(law.Leveled); ok {
 		s.eps, s.mass = levels.Levels()
 		return s
@@ -118,7 +122,7 @@ func (s *Spectrum) panel(low float64) {
 	center, half := (s.lowest+low)/2, (s.lowest-low)/2
 	add := func(x, weight float64) {
 		e := math.Exp(x)
-		if d := s.law.Density(e); d > 0 {
+		if d := s.density(e); d > 0 {
 			s.eps = append(s.eps, e)
 			s.mass = append(s.mass, half*weight*d*e*s.unit)
 		}
@@ -216,26 +220,79 @@ func (t *total) value() float64 {
 	return t.sum + t.rest
 }
 
+// A heated spectrum is one at a sharpness: exp(beta eps) - 1 of the nodes is kept, so that another mu costs no function,
+//
+//	exp(x + y) - 1 = a + b + a b,   a = exp(x) - 1,   b = exp(y) - 1,
+//
+// without cancellation, since none of the terms is negative.
+type heated struct {
+	*Spectrum
+	beta float64
+	up   []float64 // exp(beta eps) - 1
+}
+
+func (s *Spectrum) heat(beta float64) *heated { return &heated{Spectrum: s, beta: beta} }
+
+// fill brings the nodes up to n.
+func (h *heated) fill(n int) {
+	for i := len(h.up); i < n; i++ {
+		h.up = append(h.up, math.Expm1(h.beta*h.eps[i]))
+	}
+}
+
+// warm raises the sharpness by step, where by holds exp(step eps) - 1 of the nodes there were.
+func (h *heated) warm(step float64, by []float64) {
+	h.beta += step
+	h.up = h.up[:min(len(h.up), len(by))]
+	for i, b := range by[:len(h.up)] {
+		a := h.up[i]
+		h.up[i] = a + b + a*b
+	}
+}
+
+// vast is where 1/(exp(x)-1) is 0 to rounding and its square would overflow.
+const vast = 1e150
+
 // integralAndSlope returns I and its derivative with respect to ln(-mu), mu < 0; the slope is always negative.
-func (s *Spectrum) integralAndSlope(beta, mu float64) (i, slope float64) {
-	b := s.upTo(beta, mu)
+func (h *heated) integralAndSlope(mu float64) (i, slope float64) {
+	b := h.upTo(h.beta, mu)
+	h.fill(b.nodes)
+	y := math.Expm1(-h.beta * mu)
 	var t total
-	add := func(k int, mass, x float64) {
-		if x > 700 {
-			return
+	for k, a := range h.up[:b.nodes] {
+		u := a + y + a*y
+		if u > vast {
+			continue
 		}
-		u := math.Expm1(x)
-		n := mass / u
+		n := h.mass[k] / u
 		t.add(k, n)
-		slope += n * (u + 1) / u
+		slope += n + n/u
 	}
+	if !h.leveled() {
+		n := h.edge.Scale * math.Exp((h.edge.Theta+1)*b.low) / (h.edge.Theta + 1) / y
+		t.add(15, n)
+		slope += n + n/y
+	}
+	return t.value(), h.beta * mu * slope
+}
+
+// groundAndSlope returns I(beta, 0) and its derivative with respect to ln beta, for a positive edge exponent.
+func (s *Spectrum) groundAndSlope(beta float64) (i, slope float64) {
+	b := s.upTo(beta, 0)
+	var t total
 	for k, e := range s.eps[:b.nodes] {
-		add(k, s.mass[k], beta*(e-mu))
+		x := beta * e
+		u := math.Expm1(x)
+		if u > vast {
+			continue
+		}
+		n := s.mass[k] / u
+		t.add(k, n)
+		slope -= x * (n + n/u)
 	}
-	if !s.leveled() {
-		add(15, s.edge.Scale*math.Exp((s.edge.Theta+1)*b.low)/(s.edge.Theta+1), -beta*mu)
-	}
-	return t.value(), beta * mu * slope
+	n := s.edge.Scale * math.Exp(s.edge.Theta*b.low) / (beta * s.edge.Theta)
+	t.add(15, n)
+	return t.value(), slope - n
 }
 
 // slopes returns dI/dlnbeta and dI/dbmu at fixed beta mu = bmu < 0, or at bmu = 0 where it is finite:

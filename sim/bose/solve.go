@@ -162,17 +162,28 @@ const exactMu, drawnMu = 1e-14, 1e-3
 // bracket: -ln(1 + 1/r)/beta is at or below the root, because every energy is >= 0. A root nearer to 0 than 1e-300 is
 // returned as -1e-300.
 func (s *Spectrum) Mu(beta, r float64) (float64, error) {
-	return s.mu(beta, r, math.Log(math.Log1p(1/r)/beta)-1, exactMu)
+	return s.heat(beta).potential(r, math.Log(math.Log1p(1/r)/beta)-1, exactMu)
 }
 
-// mu searches from ln(-mu) = start until a step is smaller than tol.
-func (s *Spectrum) mu(beta, r, start, tol float64) (float64, error) {
+// potential searches for mu from ln(-mu) = start until a step is smaller than tol.
+func (h *heated) potential(r, start, tol float64) (float64, error) {
 	least := math.Log(muLeast)
-	low, high := least, math.Log(math.Log1p(1/r)/beta)
-	ground := s.GroundIntegral(beta, 0)
+	low, high := least, math.Log(math.Log1p(1/r)/h.beta)
+	ground := math.NaN() // I(0), found only where mu may be close to 0
+	if !h.leveled() && h.edge.Theta > 0 {
+		ground = h.GroundIntegral(h.beta, 0)
+	}
+	// Where the density is a number p0 > 0 up to the ground level, I = const - p0 ln(-mu)/beta once mu is far below all else.
+	deep := math.Min(h.base, h.top-math.Log(math.Max(1, h.beta))) - 25
+	if !h.leveled() && h.edge.Theta == 0 && deep > least {
+		if i, _ := h.integralAndSlope(-math.Exp(deep)); i < r {
+			return -math.Max(muLeast, math.Exp(deep-(r-i)*h.beta/h.edge.Scale)), nil
+		}
+		low = deep
+	}
 	y := math.Max(low, math.Min(start, high))
 	for range 200 {
-		i, slope := s.integralAndSlope(beta, -math.Exp(y))
+		i, slope := h.integralAndSlope(-math.Exp(y))
 		if i > r {
 			low = y
 		} else {
@@ -184,7 +195,7 @@ func (s *Spectrum) mu(beta, r, start, tol float64) (float64, error) {
 			next = y - math.Log((ground-r)/(ground-i))*(ground-i)/slope
 		}
 		if next <= least && low == least {
-			if s.GroundIntegral(beta, -muLeast) <= r {
+			if h.GroundIntegral(h.beta, -muLeast) <= r {
 				return -muLeast, nil
 			}
 		}
@@ -205,10 +216,31 @@ func (s *Spectrum) Critical(r float64) float64 {
 	if s.leveled() || s.edge.Theta <= 0 {
 		return math.NaN()
 	}
-	f := func(x float64) float64 { return math.Log(s.GroundIntegral(math.Exp(x), 0) / r) }
-	x, err := root.Brent(f, math.Log(betaLow), math.Log(betaHigh), 1e-13)
-	if err != nil {
-		return math.NaN()
+	// Newton's method in ln beta for ln I, kept inside the bounds by bisection.
+	low, high := math.Log(betaLow), math.Log(betaHigh)
+	x := -math.Log(s.Mean(func(e float64) float64 { return e })) // about the scale of the law
+	x = math.Max(low, math.Min(x, high))
+	for range 200 {
+		i, slope := s.groundAndSlope(math.Exp(x))
+		miss := math.Log(i / r)
+		if miss > 0 {
+			low = x
+		} else {
+			high = x
+		}
+		next := x - miss*i/slope
+		if next >= math.Log(betaHigh) && high == math.Log(betaHigh) {
+			if i, _ := s.groundAndSlope(betaHigh); i > r {
+				return math.NaN()
+			}
+		}
+		if !(next > low && next < high) {
+			next = (low + high) / 2
+		}
+		if math.Abs(next-x) < 1e-15*math.Max(1, math.Abs(x)) || high-low < 1e-15 {
+			return math.Exp(next)
+		}
+		x = next
 	}
 	return math.Exp(x)
 }

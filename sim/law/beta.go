@@ -11,11 +11,17 @@ import (
 //	p(eps) = exp(-a eps) (1 - exp(-eps))^(b-1) / B(a, b),   eps >= 0.
 type Beta struct{ A, B float64 }
 
-func (p Beta) Density(eps float64) float64 {
-	if eps <= 0 {
-		return 0
+func (p Beta) Density(eps float64) float64 { return p.Densities()(eps) }
+
+// Densities returns Density with its factor computed once.
+func (p Beta) Densities() func(eps float64) float64 {
+	norm := p.logNorm()
+	return func(eps float64) float64 {
+		if eps <= 0 {
+			return 0
+		}
+		return math.Exp(-p.A*eps + (p.B-1)*math.Log(-math.Expm1(-eps)) - norm)
 	}
-	return math.Exp(-p.A*eps + (p.B-1)*math.Log(-math.Expm1(-eps)) - p.logNorm())
 }
 
 func (p Beta) logNorm() float64 {

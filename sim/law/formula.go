@@ -3,6 +3,7 @@ package law
 import (
 	"fmt"
 	"math"
+	"sync"
 
 	"preponder/sim/internal/exact"
 )
@@ -19,9 +20,32 @@ type Formula struct {
 	largest float64
 }
 
+// recent keeps the formulas made last: while something else is dragged the same one is asked for in every frame.
+var recent struct {
+	sync.Mutex
+	list []Formula
+}
+
+const mostRecent = 8
+
 // NewFormula returns the law with this density. Errors say where the expression stops making sense, or at which energy
 // its value is no density.
 func NewFormula(text string, top float64) (Formula, error) {
+	recent.Lock()
+	defer recent.Unlock()
+	for _, f := range recent.list {
+		if f.text == text && f.top == top {
+			return f, nil
+		}
+	}
+	f, err := newFormula(text, top)
+	if err == nil {
+		recent.list = append(recent.list[max(0, len(recent.list)+1-mostRecent):], f)
+	}
+	return f, err
+}
+
+func newFormula(text string, top float64) (Formula, error) {
 	if !(top > 0 && top <= 1e6) {
 		return Formula{}, fmt.Errorf("the formula ends at energy %g; the end must be above 0 and at most 1e6", top)
 	}

@@ -11,12 +11,18 @@ import (
 //	p(eps) = eps^(k-1) exp(-eps/s) / (s^k Gamma(k)),   eps >= 0.
 type Gamma struct{ Shape, Scale float64 }
 
-func (p Gamma) Density(eps float64) float64 {
-	if eps <= 0 {
-		return 0
+func (p Gamma) Density(eps float64) float64 { return p.Densities()(eps) }
+
+// Densities returns Density with its factor computed once.
+func (p Gamma) Densities() func(eps float64) float64 {
+	norm := exact.LogGamma(p.Shape)
+	return func(eps float64) float64 {
+		if eps <= 0 {
+			return 0
+		}
+		x := eps / p.Scale
+		return math.Exp((p.Shape-1)*math.Log(x)-x-norm) / p.Scale
 	}
-	x := eps / p.Scale
-	return math.Exp((p.Shape-1)*math.Log(x)-x-exact.LogGamma(p.Shape)) / p.Scale
 }
 
 func (p Gamma) Cumulative(eps float64) float64 { return exact.Gamma(p.Shape, eps/p.Scale) }

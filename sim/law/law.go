@@ -28,3 +28,8 @@ type Edge struct {
 type Leveled interface {
 	Levels() (energy, weight []float64)
 }
+
+// An Often is a law whose density is asked for often: Densities returns its Density with everything computed once that does not depend on the energy.
+type Often interface {
+	Densities() func(eps float64) float64
+}

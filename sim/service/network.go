@@ -117,6 +117,22 @@ type Curves struct {
 	Levels     []Level    `json:"levels"` // of a discrete law
 }
 
+// columns returns the curves as raw numbers, by the names they have in JSON.
+func (c *Curves) columns() []wire.Column {
+	var out []wire.Column
+	for _, col := range []struct {
+		name string
+		v    []wire.Num
+	}{{"eps", c.Eps}, {"density", c.Density}, {"exponent", c.Exponent}, {"occupation", c.Occupation}, {"pull", c.Pull}, {"fitness", c.Fitness}, {"fitnessDensity", c.OfFitness}, {"beta", c.Beta}, {"betaMuOver", c.BetaMu}} {
+		f := make([]float32, len(col.v))
+		for i, v := range col.v {
+			f[i] = float32(v)
+		}
+		out = append(out, wire.Column{Name: col.name, Float32: f})
+	}
+	return out
+}
+
 // Level of a discrete law.
 type Level struct {
 	Eps     wire.Num `json:"eps"`
@@ -161,10 +177,16 @@ func solve(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 	}
 	v := standing.Describe(facts)
 	out.Regime, out.Reason, out.Verdict = v.Regime, v.Reason, v
+	r := reply{}
 	if ask.Curves {
 		out.Curves = curvesOf(l, beta, rule, s)
+		if ask.Columns { // numbers as text would take longer than the solver
+			r.columns = out.Curves.columns()
+			out.Curves = &Curves{Levels: out.Curves.Levels}
+		}
 	}
-	return reply{body: out}, nil
+	r.body = out
+	return r, nil
 }
 
 func edgeOf(l law.Law) Edge {

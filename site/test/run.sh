@@ -6,20 +6,7 @@ export ROOT=$PWD CGO_ENABLED=0
 log=$(mktemp -d)
 trap 'rm -rf "$log"' EXIT
 
-install() { # install COMMAND PACKAGE
-  command -v "$1" >/dev/null || missing+=("$2")
-}
-missing=()
-install chromium chromium
-install gpg gnupg
-install pdftotext poppler-utils
-[ -e /usr/share/keyrings/debian-keyring.gpg ] || missing+=(debian-keyring)
-python3 -c "import mpmath" 2>/dev/null || /usr/bin/python3 -c "import mpmath" 2>/dev/null || missing+=(python3-mpmath)
 export PREPONDER_REFERENCES=1 # tests against reference libraries fail where those are missing
-if [ ${#missing[@]} -gt 0 ]; then
-  echo "installing ${missing[*]}"
-  apt-get update -qq && DEBIAN_FRONTEND=noninteractive apt-get install -y -qq --no-install-recommends "${missing[@]}" fonts-liberation >/dev/null || exit 1
-fi
 
 ./build.sh build || exit 1
 failed=0

@@ -5,7 +5,7 @@ import { column } from "../engine/wire";
 import { current, doc, isDragging, projection, say, tables } from "./document";
 import { engines, digests, fault, grown, growing, outlookFault, outlooks, reached, running, sentenceOf, solved, waitingToGrow, type Digest } from "./results";
 import { keep, kept } from "./storage";
-import type { Casebook, Entry, Grown, Outlook, Solved } from "./types";
+import type { Casebook, Curves, Entry, Grown, Outlook, Solved } from "./types";
 import { follow, quick, said, shown, theme } from "./view";
 import { percent, count } from "../words/format";
 
@@ -43,8 +43,8 @@ function report(e: unknown): void {
 
 async function askSolve(book: Casebook, key: string): Promise<void> {
   try {
-    const r = await engines.side.askNewest<Solved>("solve", { casebook: book, entry: 0, curves: true });
-    if (r) takeSolved(r, key);
+    const r = await engines.side.askNewest<Solved>("solve", { casebook: book, entry: 0, curves: true, columns: true });
+    if (r) takeSolved(withCurves(r), key);
   } catch (e) {
     report(e);
   }
@@ -54,8 +54,15 @@ async function askSolve(book: Casebook, key: string): Promise<void> {
 const patience = 60;
 let early: { solution: () => void; timer: number } | undefined;
 
-function takeSolved(r: Reply<Solved>, key: string): void {
-  const solution = (): void => batch(() => { solved.value = { key, value: r.body }; fault.value = undefined; });
+/** Puts the curves, which come as raw numbers, where they have their names. */
+function withCurves(r: Reply<Solved>): Solved {
+  const curves: Record<string, unknown> = { ...r.body.curves };
+  for (const c of r.columns) curves[c.name] = Array.from(c.data, (v) => (Number.isFinite(v) ? v : null));
+  return { ...r.body, curves: curves as unknown as Curves };
+}
+
+function takeSolved(value: Solved, key: string): void {
+  const solution = (): void => batch(() => { solved.value = { key, value }; fault.value = undefined; });
   if (early) clearTimeout(early.timer);
   early = undefined;
   if (quick.peek()) early = { solution, timer: window.setTimeout(takeEarly, patience) };
