@@ -21,9 +21,20 @@ func TestUniformFitness(t *testing.T) {
 	if s.Regime != FitGetRich || !math.IsInf(s.GroundIntegral, 1) {
 		t.Errorf("uniform fitness: %v with I(0) = %g", s.Regime, s.GroundIntegral)
 	}
+	// f(eta) = eta/C at eta = 0.3, 0.6, 0.9, as plotted in that paper (values to twelve digits by mpmath); 1/C is also the
+	// giant component of a random graph of mean degree 2, S = 1 - exp(-2 S) (Erdos and Renyi).
+	for eta, f := range map[float64]float64{.3: .239043639006, .6: .478087278012, .9: .717130917018} {
+		near.Rel(t, "f", Exponent(-math.Log(eta), s.BetaMu), f, 1e-11)
+		near.Rel(t, "n = f/(1 - f)", Occupation(-math.Log(eta), s.BetaMu), f/(1-f), 1e-11)
+	}
+	near.Rel(t, "giant component", math.Exp(s.BetaMu), 1-math.Exp(-2*math.Exp(s.BetaMu)), 1e-12)
 	// Gamma energies with k = 1 are the same law (identity, derived).
 	g, _ := Solve(law.Gamma{Shape: 1, Scale: 1}, 1, plain)
 	near.Rel(t, "gamma k=1", g.BetaMu, s.BetaMu, 1e-11)
+	for beta, z := range map[float64]float64{.5: .683802623752021, 1: .79681213002002, 2: .916813956124163} { // by mpmath
+		g, _ := Solve(law.Gamma{Shape: 1, Scale: 1}, beta, plain)
+		near.Rel(t, "gamma k=1 z", math.Exp(g.BetaMu), z, 1e-12)
+	}
 }
 
 func TestDebyeFunctions(t *testing.T) {
@@ -32,11 +43,19 @@ func TestDebyeFunctions(t *testing.T) {
 	rows := []struct{ n, x, d float64 }{
 		{1, 1, 0.777504634112}, {2, 1, 0.707878475628}, {3, 1, 0.674415564078}, {4, 1, 0.654874068887},
 		{1, .5, .881927156791}, {2, .5, .843721193347}, {3, .5, .824962968976}, {4, .5, .813845691720},
+		{1, .1, .975278}, {2, .1, .967083}, {3, .1, .963000}, {4, .1, .960555}, // 6 digits
+		{1, 2, .606947}, {2, 2, .493083}, {3, 2, .441128}, {4, 2, .411893},
+		{1, 3, .480435}, {2, 3, .342614}, {3, 3, .283580}, {4, 3, .251879},
+		{1, 5, .320876}, {2, 5, .172329}, {3, 5, .117597}, {4, 5, .091471},
 		{1, 10, .164443465680}, {2, 10, .0479714980201}, {3, 10, .0192957656903}, {4, 10, .00967367556027},
 	}
 	for _, r := range rows {
 		got := NewSpectrum(law.Power{Theta: r.n}).GroundIntegral(r.x, 0)
-		near.Rel(t, "Debye", got, (r.n+1)/r.n*r.d/r.x, 5e-12)
+		tol := 5e-12
+		if math.Abs(math.Round(r.d*1e6)-r.d*1e6) < 1e-9 {
+			tol = 6e-6 // half a unit of the sixth decimal
+		}
+		near.Rel(t, "Debye", got, (r.n+1)/r.n*r.d/r.x, tol)
 	}
 }
 
@@ -58,8 +77,20 @@ func TestCriticalSharpness(t *testing.T) {
 	if b := NewSpectrum(law.Power{Theta: 1}).Critical(1); 1/b <= 0.551328895421792 {
 		t.Errorf("critical temperature %g below the published bound", 1/b)
 	}
-	if !math.IsNaN(NewSpectrum(law.Power{Theta: 0}).Critical(1)) {
-		t.Error("a gas in two dimensions condenses")
+	// The ideal gas in d dimensions, theta = d/2 - 1, condenses only above two (any textbook).
+	for d, condenses := range map[float64]bool{1: false, 2: false, 2.5: true, 3: true, 4: true, 6: true} {
+		if got := !math.IsNaN(NewSpectrum(law.Power{Theta: d/2 - 1}).Critical(1)); got != condenses {
+			t.Errorf("a gas in %g dimensions: condenses %v", d, got)
+		}
+	}
+	// All energies at 1 in the limit of large theta: critical sharpness ln 2, approached from above (derived).
+	before := math.Inf(1)
+	for _, theta := range []float64{10, 20, 50} {
+		b := NewSpectrum(law.Power{Theta: theta}).Critical(1)
+		if !(b > math.Ln2 && b < before) {
+			t.Errorf("theta %g: critical sharpness %g", theta, b)
+		}
+		before = b
 	}
 }
 
@@ -99,6 +130,10 @@ func TestCondensate(t *testing.T) {
 	// share counted over link ends. Uniform q: mean fitness w = C/2 (mapping derived).
 	s, _ := Solve(law.Uniform{}, 1, plain)
 	near.Rel(t, "Kingman w", math.Exp(-s.BetaMu)/2, 0.627500487457987633, 1e-12)
+	// The condition in its other form, E[1/(1-eta)]/2 < 1, and the atom: 1 - b int q/(1-x) at b = 1/2.
+	half := (NewSpectrum(law.Beta{A: 1, B: 3}).GroundIntegral(1, 0) + 1) / 2 // 1/(1-eta) = eta/(1-eta) + 1
+	k, _ := Solve(law.Beta{A: 1, B: 3}, 1, plain)
+	near.Rel(t, "Kingman atom", 1-half, k.Condensate/2, 1e-11)
 }
 
 func TestGammaEnergies(t *testing.T) {
@@ -116,7 +151,14 @@ func TestFreeGasInThreeDimensions(t *testing.T) {
 	// Without an upper cut-off n lambda^3 = zeta(3/2) = 2.612 at the transition (any textbook): p = (3/2) sqrt(eps) up to
 	// e_max, beta*e_max large, gives I = (3/2) Gamma(3/2) zeta(3/2) beta^(-3/2).
 	i := NewSpectrum(law.Power{Theta: 0.5}).GroundIntegral(400, 0)
-	near.Rel(t, "zeta(3/2)", i*math.Pow(400, 1.5)/1.5/math.Gamma(1.5), 2.6123753486854883433, 1e-11)
+	zeta := i * math.Pow(400, 1.5) / 1.5 / math.Gamma(1.5)
+	near.Rel(t, "zeta(3/2)", zeta, 2.6123753486854883433, 1e-11)
+	// Helium as an ideal gas: 3.13 K from m = 6.65e-24 g and 27.6 cm^3/mol (Pathria & Beale, Statistical Mechanics, 7.1,
+	// from memory), T = 2 pi hbar^2/(m k) (n/zeta(3/2))^(2/3).
+	const hbar, k, mass = 1.054571817e-34, 1.380649e-23, 6.65e-27
+	near.Abs(t, "helium", 2*math.Pi*hbar*hbar/(mass*k)*math.Pow(6.02214076e23/27.6e-6/zeta, 2./3), 3.13, .005)
+	// The free gas in network units, no upper cut-off: T = (zeta(3/2) Gamma(5/2))^(-2/3) (by mpmath).
+	near.Rel(t, "free gas", math.Pow(zeta*math.Gamma(2.5), -2./3), 0.436065922441333, 1e-11)
 }
 
 func TestIdentities(t *testing.T) {

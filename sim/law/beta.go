@@ -3,6 +3,8 @@ package law
 import (
 	"math"
 
+	"gonum.org/v1/gonum/mathext"
+
 	"preponder/sim/internal/exact"
 )
 
@@ -62,6 +64,9 @@ func (p Beta) start(u float64) float64 {
 }
 
 func (p Beta) Support() (low, high float64) { return 0, math.Inf(1) }
+
+// Mean returns E[-ln x] = psi(a+b) - psi(a), psi the digamma function.
+func (p Beta) Mean() float64 { return mathext.Digamma(p.A+p.B) - mathext.Digamma(p.A) }
 func (p Beta) Edge() Edge {
 	return Edge{Theta: p.B - 1, Scale: math.Exp(-p.logNorm())}
 }

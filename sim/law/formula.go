@@ -6,6 +6,7 @@ import (
 	"sync"
 
 	"preponder/sim/internal/exact"
+	"preponder/sim/internal/gauss"
 )
 
 // Formula is a law whose density is proportional to an expression in the energy e on [0, top]. Made by NewFormula.
@@ -218,8 +219,21 @@ func (p Formula) Cumulative(eps float64) float64 {
 	return p.panels.cumulative(eps)
 }
 
-func (p Formula) Quantile(u float64) float64       { return math.Min(p.top, p.panels.quantile(u)) }
-func (p Formula) Support() (low, high float64)     { return 0, p.top }
+func (p Formula) Quantile(u float64) float64   { return math.Min(p.top, p.panels.quantile(u)) }
+func (p Formula) Support() (low, high float64) { return 0, p.top }
+
+// Mean sums over the panels; what lies below them adds less than the energy they begin at.
+func (p Formula) Mean() float64 {
+	sum := 0.0
+	for _, q := range p.panels.list {
+		for i, t := range gauss.Nodes {
+			g, _ := q.g.At(t)
+			sum += q.width / 2 * gauss.Weights[i] * g * math.Exp(q.low+q.width*(t+1)/2)
+		}
+	}
+	return sum + p.panels.below()*math.Exp(p.panels.list[0].low)*(p.panels.edge.Theta+1)/(p.panels.edge.Theta+2)
+}
+
 func (p Formula) Edge() Edge                       { return p.panels.edge }
 func (p Formula) Knots() []float64                 { return p.breaks }
 func (p Formula) EdgeUncertainty() (theta float64) { return p.unsure }

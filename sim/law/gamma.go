@@ -45,6 +45,7 @@ func (p Gamma) Quantile(u float64) float64 {
 }
 
 func (p Gamma) Support() (low, high float64) { return 0, math.Inf(1) }
+func (p Gamma) Mean() float64                { return p.Shape * p.Scale }
 func (p Gamma) Edge() Edge {
 	return Edge{Theta: p.Shape - 1, Scale: math.Exp(-exact.LogGamma(p.Shape) - p.Shape*math.Log(p.Scale))}
 }

@@ -14,6 +14,8 @@ type Law interface {
 	Quantile(u float64) float64
 	// Support returns the least and the largest energy; either may be infinite.
 	Support() (low, high float64)
+	// Mean returns the mean energy.
+	Mean() float64
 	// Edge describes the density at the ground level.
 	Edge() Edge
 }

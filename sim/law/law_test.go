@@ -46,6 +46,14 @@ func check(t *testing.T, l law.Law) {
 			near.Rel(t, name+" cumulative of quantile", l.Cumulative(e), u, 1e-10+1e-16/u)
 		}
 	}
+	// The mean is that of the quantiles, in the middle of a thousand equal shares.
+	mean, spread := 0.0, 0.0
+	for i := range 2000 {
+		e := l.Quantile((float64(i) + .5) / 2000)
+		mean += e / 2000
+		spread += math.Abs(e) / 2000
+	}
+	near.Abs(t, name+" mean", l.Mean(), mean, 4e-3*spread)
 	if _, leveled := l.(law.Leveled); leveled {
 		return
 	}

@@ -18,4 +18,5 @@ func (p Lognormal) Density(eps float64) float64 {
 func (p Lognormal) Cumulative(eps float64) float64 { return 0.5 * math.Erfc(-eps/(p.Sigma*math.Sqrt2)) }
 func (p Lognormal) Quantile(u float64) float64     { return float64(p.Sigma * exact.Normal(u)) }
 func (p Lognormal) Support() (low, high float64)   { return math.Inf(-1), math.Inf(1) }
+func (p Lognormal) Mean() float64                  { return 0 }
 func (p Lognormal) Edge() Edge                     { return Edge{} }

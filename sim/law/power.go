@@ -29,4 +29,5 @@ func (p Power) Cumulative(eps float64) float64 {
 
 func (p Power) Quantile(u float64) float64   { return exact.Pow(u, 1/(p.Theta+1)) }
 func (p Power) Support() (low, high float64) { return 0, 1 }
+func (p Power) Mean() float64                { return (p.Theta + 1) / (p.Theta + 2) }
 func (p Power) Edge() Edge                   { return Edge{Theta: p.Theta, Scale: p.Theta + 1} }

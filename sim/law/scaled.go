@@ -16,6 +16,8 @@ func (p Scaled) Support() (low, high float64) {
 	return low * p.By, high * p.By
 }
 
+func (p Scaled) Mean() float64 { return p.By * p.Law.Mean() }
+
 func (p Scaled) Edge() Edge {
 	e := p.Law.Edge()
 	e.Scale *= math.Pow(p.By, -e.Theta-1)

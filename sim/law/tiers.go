@@ -45,6 +45,13 @@ func (p Tiers) Quantile(u float64) float64 {
 	return p.energy[len(p.energy)-1]
 }
 
-func (p Tiers) Support() (low, high float64)       { return 0, p.energy[len(p.energy)-1] }
+func (p Tiers) Support() (low, high float64) { return 0, p.energy[len(p.energy)-1] }
+func (p Tiers) Mean() float64 {
+	sum := 0.0
+	for i, e := range p.energy {
+		sum += p.weight[i] * e
+	}
+	return sum
+}
 func (p Tiers) Edge() Edge                         { return Edge{Atom: p.weight[0]} }
 func (p Tiers) Levels() (energy, weight []float64) { return p.energy, p.weight }

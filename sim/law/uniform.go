@@ -31,4 +31,13 @@ func (p Uniform) Quantile(u float64) float64 {
 }
 
 func (p Uniform) Support() (low, high float64) { return 0, -math.Log(p.Low) }
-func (p Uniform) Edge() Edge                   { return Edge{Theta: 0, Scale: 1 / (1 - p.Low)} }
+
+// Mean returns E[-ln x] for x uniform on [low, 1]: 1 + low ln(low)/(1 - low).
+func (p Uniform) Mean() float64 {
+	if p.Low == 0 {
+		return 1
+	}
+	return 1 + p.Low*math.Log(p.Low)/(1-p.Low)
+}
+
+func (p Uniform) Edge() Edge { return Edge{Theta: 0, Scale: 1 / (1 - p.Low)} }

@@ -38,7 +38,9 @@ export function keyOf(book: Casebook): string {
 
 function report(e: unknown): void {
   const s = sentenceOf(e);
-  if (s) fault.value = s;
+  if (!s) return;
+  takeEarly(); // else the solution that waits would wipe the fault away
+  fault.value = s;
 }
 
 async function askSolve(book: Casebook, key: string): Promise<void> {
