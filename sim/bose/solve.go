@@ -11,12 +11,16 @@ import (
 // A Regime is where a network stands in endless growth.
 type Regime string
 
-// The regimes. Records: no ground level, fitter members take over for ever. Unknown: the rule is outside the theory.
+// The regimes. Records: no ground level, fitter members take over for ever. Gelation and sublinear: what a kernel above
+// and below 1 leads to, whatever the law (Krapivsky, Redner and Leyvraz, PRL 85, 4629, 2000). Unknown: the rule is outside
+// the theory.
 const (
 	Level      Regime = "level"
 	FitGetRich Regime = "fit-get-rich"
 	Condensate Regime = "condensate"
 	Records    Regime = "records"
+	Gelation   Regime = "gelation"
+	Sublinear  Regime = "sublinear"
 	Unknown    Regime = "unknown"
 )
 

@@ -70,7 +70,7 @@ func TestReadNamesWhatIsWrong(t *testing.T) {
 		{entry(`{"sharpness":"x"}`), "sharpness"},
 		{entry(`{"growth":{"members":20000000}}`), "members is 20,000,000; it must be from 2 to 10,000,000"},
 		{entry(`{"growth":{"links":65}}`), "links is 65"},
-		{entry(`{"growth":{"fading":0.3}}`), "fading is 0.3"},
+		{entry(`{"growth":{"fading":3.5}}`), "fading is 3.5; it must be from 0 to 3"},
 		{entry(`{"growth":{"start":"evidence"}}`), "holds none"},
 		{entry(`{"law":{"family":"evidence"}}`), "holds none"},
 		{entry(`{"law":{"family":"cauchy"}}`), `"cauchy"`},

@@ -66,29 +66,14 @@ func (e *Entry) check(c *Casebook) error {
 			return fmt.Errorf("%s is %v; it must be from %v to %v", r.name, Number(r.v), Number(r.low), Number(r.high))
 		}
 	}
-	levers := map[string]float64{"headStart": g.HeadStart, "openShare": g.OpenShare, "ceiling": g.Ceiling, "distinct": 0}
+	levers := map[string]float64{"headStart": g.HeadStart, "openShare": g.OpenShare, "ceiling": g.Ceiling, "distinct": 0, "levy.rate": g.Levy.Rate, "levy.above": g.Levy.Above, "expiry": float64(g.Expiry),
+		"kernel": g.Kernel, "fading": g.Fading, "idling": g.Idling}
 	for _, row := range growth.Levers {
 		if v := levers[row.Name]; !(v >= row.Low && v <= row.High) {
 			return fmt.Errorf("%s is %v; it must be from %v to %v", row.Name, Number(v), Number(row.Low), Number(row.High))
 		}
 	}
-	if err := g.later(); err != nil {
-		return err
-	}
 	return e.checkStart(c)
-}
-
-// later refuses what the format knows and this version does not grow with.
-func (g Growth) later() error {
-	for _, r := range []struct {
-		name   string
-		v, off float64
-	}{{"kernel", g.Kernel, 1}, {"levy.above", g.Levy.Above, 0}, {"levy.rate", g.Levy.Rate, 0}, {"fading", g.Fading, 0}, {"idling", g.Idling, 0}, {"expiry", float64(g.Expiry), 0}} {
-		if r.v != r.off {
-			return fmt.Errorf("%s is %v; this version grows networks only with %s at %v", r.name, Number(r.v), r.name, r.off)
-		}
-	}
-	return nil
 }
 
 func (e *Entry) checkStart(c *Casebook) error {
@@ -101,6 +86,14 @@ func (e *Entry) checkStart(c *Casebook) error {
 		}
 		if least := c.Evidence.Members; e.Growth.Members < least {
 			return fmt.Errorf("members is %s, fewer than the %s the log holds", Number(float64(e.Growth.Members)), Number(float64(least)))
+		}
+		for _, r := range []struct {
+			name string
+			v    float64
+		}{{"fading", e.Growth.Fading}, {"idling", e.Growth.Idling}, {"expiry", float64(e.Growth.Expiry)}} {
+			if r.v != 0 {
+				return fmt.Errorf("%s is %v, but the evidence of a log does not keep when its members were last active; set %s to 0 or start from one member", r.name, Number(r.v), r.name)
+			}
 		}
 		return nil
 	}
@@ -136,6 +129,13 @@ func (c *Casebook) Params(k int) growth.Params {
 	g := e.Growth
 	p := growth.Params{Law: l, Sharpness: beta, Links: g.Links, HeadStart: g.HeadStart, OpenShare: g.OpenShare, Ceiling: g.Ceiling,
 		Distinct: g.Distinct, Members: g.Members, Seed: g.Seed, LeversFrom: g.LeversFrom}
+	p.Kernel, p.Fading, p.Idling, p.LevyAbove, p.LevyRate, p.Expiry = g.Kernel, g.Fading, g.Idling, g.Levy.Above, g.Levy.Rate, g.Expiry
+	switch g.Kernel {
+	case 0:
+		p.Kernel = growth.UniformKernel
+	case 1:
+		p.Kernel = 0
+	}
 	if g.Start == "evidence" {
 		p.Start = c.Evidence.Start(l, 0, 0)
 	}

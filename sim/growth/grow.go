@@ -21,7 +21,7 @@ func Grow(p Params, step func(done float64) error) (*Network, error) {
 	}
 	g := &grower{Network: n, levers: p, own: p.Links + p.HeadStart, key: exact.Key(p.Seed, exact.Links), extra: exact.Key(p.Seed, exact.Extra)}
 	if g.LeversFrom > g.from {
-		g.HeadStart, g.OpenShare, g.Ceiling, g.Distinct = 0, 0, 0, false
+		g.off()
 		g.own = p.Links
 	}
 	g.makeRoom()
@@ -37,6 +37,7 @@ func Grow(p Params, step func(done float64) error) (*Network, error) {
 			g.present(v)
 		}
 	}
+	g.prepare(n.from)
 	for v := n.from; v < p.Members; v++ {
 		if step != nil && v%between == 0 {
 			if err := step(float64(v-n.from) / float64(p.Members-n.from)); err != nil {
@@ -60,9 +61,13 @@ type grower struct {
 	key, extra  uint64
 	weight      []float64 // fitness relative to the best so far
 	best        float64   // energy of the best so far
-	received    []int32   // kept only where the ceiling or the tree needs it
+	received    []int32   // kept only where a lever or the tree needs it
+	expired     []int32   // of those, links that count no more; kept with received under expiry
+	live        int       // the first link that counts
 	closed      []int32   // members at the ceiling
+	levied      []int32   // members above the levy's share, kept with the tree
 	tree        *sumTree  // nil while rejection works
+	ages        *ages     // under a kernel, fading or idling: then the tree stays
 	untilReject int       // links left before rejection is tried again
 	chosen      []int32   // by the newcomer at hand, for Distinct
 }
@@ -72,15 +77,49 @@ func (g *grower) pullLevers() {
 	if g.LeversFrom <= g.from {
 		return
 	}
-	g.HeadStart, g.OpenShare, g.Ceiling, g.Distinct = g.levers.HeadStart, g.levers.OpenShare, g.levers.Ceiling, g.levers.Distinct
+	g.Network.Params = g.levers
 	g.own = g.Links + g.HeadStart
-	if g.Ceiling > 0 {
+	g.tree = nil
+	g.prepare(g.LeversFrom)
+}
+
+// off takes the levers out of force.
+func (g *grower) off() {
+	p := &g.Network.Params
+	p.HeadStart, p.OpenShare, p.Ceiling, p.Distinct, p.Kernel, p.Fading, p.Idling, p.LevyAbove, p.LevyRate, p.Expiry = 0, 0, 0, false, 0, 0, 0, 0, 0, 0
+}
+
+// prepare makes what the levers in force need to know of the v members there are.
+func (g *grower) prepare(v int) {
+	g.expire(v)
+	if g.Ceiling > 0 || g.LevyRate > 0 {
 		g.count()
-		for j := range g.LeversFrom {
+	}
+	if g.Ceiling > 0 {
+		for j := range v {
 			g.watch(int32(j))
 		}
 	}
-	g.tree = nil
+	if g.alpha() != 1 || g.Fading > 0 || g.Idling > 0 {
+		g.ages = g.newAges(v)
+		g.plant(v)
+	}
+}
+
+// expire takes links made more than Expiry arrivals before newcomer v out of count. The links of a start count as made
+// when it ended.
+func (g *grower) expire(v int) {
+	if g.Expiry == 0 {
+		return
+	}
+	to, _ := g.linksOf(v - g.Expiry)
+	for ; g.live < to; g.live++ {
+		if g.expired != nil {
+			j := g.Targets[g.live]
+			g.expired[j]++
+			g.stir(j)
+		}
+	}
 }
 
 func (g *grower) makeRoom() {
@@ -97,12 +136,6 @@ func (g *grower) makeRoom() {
 		g.first = make([]int32, 1, p.Members-g.from+1)
 		g.first[0] = int32(len(g.Targets))
 	}
-	if p.Ceiling > 0 {
-		g.count()
-		for j := range g.from {
-			g.watch(int32(j))
-		}
-	}
 }
 
 // startTargets lays the links of the start out as targets, room for the rest behind them.
@@ -115,6 +148,9 @@ func startTargets(p Params) []int32 {
 		links += int(d)
 	}
 	t := make([]int32, 0, links+int(float64(p.Members-len(p.Start.Energy))*(p.Links+1)))
+	if p.Start.History != nil {
+		return append(t, p.Start.History.Targets...)
+	}
 	for j, d := range p.Start.Received {
 		for range d {
 			t = append(t, int32(j))
@@ -123,11 +159,28 @@ func startTargets(p Params) []int32 {
 	return t
 }
 
-// count fills in the links received so far.
+// linksOf returns where the links of newcomer u begin and end among the targets; nowhere where that is not known.
+func (g *grower) linksOf(u int) (first, end int) {
+	switch {
+	case u >= g.from && u < g.Members:
+		return g.LinksBefore(u), g.LinksBefore(u + 1)
+	case u > 0 && g.Start != nil && g.Start.History != nil:
+		return g.Start.History.LinksBefore(u), g.Start.History.LinksBefore(u + 1)
+	}
+	return 0, 0
+}
+
+// count fills in the links received so far, and which of them have expired.
 func (g *grower) count() {
 	g.received = make([]int32, g.Members)
 	for _, j := range g.Targets {
 		g.received[j]++
+	}
+	if g.Expiry > 0 {
+		g.expired = make([]int32, g.Members)
+		for _, j := range g.Targets[:g.live] {
+			g.expired[j]++
+		}
 	}
 }
 
@@ -182,18 +235,21 @@ func (g *grower) newcomer(v int) {
 	if g.first != nil {
 		g.first = append(g.first, int32(len(g.Targets)))
 	}
-	g.settle()
+	g.settle(v)
 	g.chosen = g.chosen[:0]
 }
 
-// settle brings counts, ceiling and tree up to date after a newcomer.
-func (g *grower) settle() {
-	if g.received == nil {
-		return
-	}
+// settle brings counts, ceiling and tree up to date after newcomer v, for the one after it.
+func (g *grower) settle(v int) {
 	for _, j := range g.chosen {
-		g.received[j]++
+		if g.received != nil {
+			g.received[j]++
+		}
 	}
+	if g.ages != nil {
+		g.age(v)
+	}
+	g.expire(v + 1)
 	if g.Ceiling > 0 {
 		was := g.closed
 		g.closed = nil
@@ -203,27 +259,79 @@ func (g *grower) settle() {
 		for _, j := range g.chosen {
 			g.watch(j)
 		}
-		if g.tree != nil {
-			for _, j := range was {
-				g.tree.set(int(j), g.pull(j))
-			}
-			for _, j := range g.closed {
-				g.tree.set(int(j), 0)
-			}
+		for _, j := range was {
+			g.stir(j)
+		}
+		for _, j := range g.closed {
+			g.stir(j)
 		}
 	}
 	if g.tree == nil {
 		return
 	}
 	for _, j := range g.chosen {
-		g.tree.set(int(j), g.pull(j))
+		g.stir(j)
 	}
-	if g.untilReject -= len(g.chosen); g.untilReject <= 0 {
+	if g.LevyRate > 0 {
+		g.levy()
+	}
+	if g.untilReject -= len(g.chosen); g.untilReject <= 0 && g.ages == nil {
 		g.tree = nil
-		if g.Ceiling == 0 {
-			g.received = nil
+		if g.Ceiling == 0 && g.LevyRate == 0 {
+			g.received, g.expired = nil, nil
 		}
 	}
+}
+
+// stir brings the leaf of j up to date, where there is a tree.
+func (g *grower) stir(j int32) {
+	if g.tree != nil {
+		g.tree.set(int(j), g.pull(j))
+	}
+}
+
+// levy brings members above the levy's share up to date: what they pull moves with all links.
+func (g *grower) levy() {
+	was := g.levied
+	g.levied = nil
+	for _, list := range [2][]int32{was, g.chosen} {
+		for _, j := range list {
+			g.stir(j)
+			if g.over(j) && !has(g.levied, j) {
+				g.levied = append(g.levied, j)
+			}
+		}
+	}
+}
+
+// counting returns the links received that j still counts.
+func (g *grower) counting(j int32) float64 {
+	if g.expired != nil {
+		return float64(g.received[j] - g.expired[j])
+	}
+	return float64(g.received[j])
+}
+
+// free returns how many links received a member may hold before the levy takes its part.
+func (g *grower) free() float64 { return float64(g.LevyAbove * float64(len(g.Targets)-g.live)) }
+
+func (g *grower) over(j int32) bool { return g.counting(j) > g.free() }
+
+// tickets returns T_j, what is left of it under the levy.
+func (g *grower) tickets(j int32) float64 {
+	d := g.counting(j)
+	if g.LevyRate > 0 {
+		d = g.left(d)
+	}
+	return g.own + d
+}
+
+// left returns what the levy leaves of d links received.
+func (g *grower) left(d float64) float64 {
+	if f := g.free(); d > f {
+		return f + float64((1-g.LevyRate)*(d-f))
+	}
+	return d
 }
 
 // watch puts j on the list of members at the ceiling if it stands there.
@@ -233,12 +341,25 @@ func (g *grower) watch(j int32) {
 	}
 }
 
-// pull returns eta_j T_j relative to the best fitness, 0 at the ceiling.
+// pull returns the weight of j relative to the best fitness, 0 at the ceiling; under fading and idling a bound of it.
 func (g *grower) pull(j int32) float64 {
 	if has(g.closed, j) {
 		return 0
 	}
-	return float64(g.weight[j] * (g.own + float64(g.received[j])))
+	t := g.tickets(j)
+	if g.ages == nil {
+		return float64(g.weight[j] * t)
+	}
+	return float64(float64(g.weight[j]*g.raised(t)) * g.bound(j))
+}
+
+// logPull returns the logarithm of the weight of j, its fitness relative to the best.
+func (g *grower) logPull(j int32) float64 {
+	w := float64(-g.Sharpness*(g.Energy[j]-g.best)) + float64(g.alpha()*exact.Log(g.tickets(j)))
+	if g.ages != nil {
+		w += g.logAge(j)
+	}
+	return w
 }
 
 func has(list []int32, j int32) bool {
@@ -265,19 +386,26 @@ func (g *grower) draw(v, links int) int32 {
 		return g.drawExact(v, index)
 	}
 	own := float64(g.own * float64(v))
-	all := own + float64(links)
-	targets := g.Targets[:links]
+	targets := g.Targets[g.live:links]
+	all := own + float64(len(targets))
 	plain := len(g.closed) == 0 && !g.Distinct
 	for try := range uint64(tries) {
 		bits := exact.Bits(g.key, index, try)
 		x := float64(exact.Unit(bits) * all)
 		var j int32
+		var w float64
 		if x < own {
 			j = int32(min(int(x/g.own), v-1))
+			w = g.weight[j]
 		} else {
-			j = targets[min(int(x-own), links-1)]
+			j = targets[min(int(x-own), len(targets)-1)]
+			w = g.weight[j]
+			if g.LevyRate > 0 {
+				d := g.counting(j)
+				w = float64(w * (g.left(d) / d))
+			}
 		}
-		if w := g.weight[j]; w < 1 && exact.Unit(exact.Again(bits)) >= w {
+		if w < 1 && exact.Unit(exact.Again(bits)) >= w {
 			continue
 		}
 		if plain || !g.barred(j) {
@@ -309,7 +437,11 @@ func (g *grower) plant(v int) {
 		g.tree = newSumTree(g.Members)
 		g.untilReject = max(1000, v/4)
 	}
+	g.levied = nil
 	g.tree.fill(v, func(j int) float64 {
+		if g.LevyRate > 0 && g.over(int32(j)) {
+			g.levied = append(g.levied, int32(j))
+		}
 		if g.Distinct && has(g.chosen, int32(j)) {
 			return 0
 		}
@@ -317,16 +449,18 @@ func (g *grower) plant(v int) {
 	})
 }
 
-// drawExact returns a member with the exact probability, from the tree. Where no member with weight above the smallest
-// number is open, it compares in logs instead.
+// drawExact returns a member with the exact probability, from the tree; under fading and idling the tree holds bounds, and
+// a draw is taken in the share its weight has of the bound. Where no member with weight above the smallest number is open,
+// it compares in logs instead.
 func (g *grower) drawExact(v int, index uint64) int32 {
-	u := exact.Unit(exact.Bits(g.key, index, tries))
-	if g.tree.total() > 1e-280 {
-		return int32(g.tree.find(float64(u * g.tree.total())))
+	for try := uint64(tries); try < 4*tries && g.tree.total() > 1e-280; try++ {
+		bits := exact.Bits(g.key, index, try)
+		j := int32(g.tree.find(float64(exact.Unit(bits) * g.tree.total())))
+		if g.ages == nil || exact.Unit(exact.Again(bits)) < g.share(j) {
+			return j
+		}
 	}
-	return g.scan(v, u, func(j int) float64 {
-		return float64(-g.Sharpness*(g.Energy[j]-g.best)) + exact.Log(g.own+float64(g.received[j]))
-	})
+	return g.scan(v, exact.Unit(exact.Bits(g.key, index, 4*tries)), func(j int) float64 { return g.logPull(int32(j)) })
 }
 
 // scan draws from exp(logWeight) over the members that are not barred; if all are, over those not chosen yet.

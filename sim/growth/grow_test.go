@@ -5,9 +5,11 @@ import (
 	"math"
 	"testing"
 
+	"gonum.org/v1/gonum/stat"
 	"gonum.org/v1/gonum/stat/distuv"
 
 	"preponder/sim/bose"
+	"preponder/sim/internal/exact"
 	"preponder/sim/internal/near"
 	"preponder/sim/law"
 )
@@ -63,70 +65,116 @@ func degreeLaw(m, a float64) func(d int) float64 {
 	}
 }
 
-// TestAgainstEnumeration compares two newcomers' choices, many seeds, with the exact probabilities by enumeration from
-// the definition, lever by lever.
+// TestAgainstEnumeration compares newcomers' choices, many seeds, with the exact probabilities of all histories, walked
+// straight from the definitions in MODEL.md: every lever alone and in combinations, from one member and from a start.
 func TestAgainstEnumeration(t *testing.T) {
 	start := &Start{Energy: []float64{0.9, 0.3, 0.6, 0.5}, Received: []int32{4, 1, 0, 3}}
+	// From a start two newcomers come; from one member five, each of the energy of the only level.
 	base := Params{Law: law.NewTiers([]float64{0}, []float64{1}), Sharpness: 2, Links: 2, Members: 6, Start: start}
-	cases := map[string]func(p *Params){
-		"plain":               func(p *Params) {},
-		"sharp":               func(p *Params) { p.Sharpness = 9 },
-		"head start":          func(p *Params) { p.HeadStart = 1.5 },
-		"open share":          func(p *Params) { p.OpenShare = 0.4 },
-		"distinct":            func(p *Params) { p.Distinct = true },
-		"ceiling":             func(p *Params) { p.Ceiling = 0.3 },
-		"ceiling for all":     func(p *Params) { p.Ceiling = 0.01; p.Distinct = true; p.Links = 3 },
-		"distinct, sharp":     func(p *Params) { p.Distinct = true; p.Sharpness = 40 },
-		"ceiling, sharp":      func(p *Params) { p.Ceiling = 0.2; p.Sharpness = 2000 },
-		"all levers":          func(p *Params) { p.Ceiling = 0.3; p.Distinct = true; p.OpenShare = 0.3; p.HeadStart = 2 },
-		"open and ceiling":    func(p *Params) { p.Ceiling = 0.3; p.OpenShare = 0.7 },
-		"three links at once": func(p *Params) { p.Links = 3; p.Members = 5 },
+	young := Params{Law: law.NewTiers([]float64{0}, []float64{1}), Links: 1, Members: 6}
+	cases := []struct {
+		name string
+		from Params
+		set  func(p *Params)
+	}{
+		{"plain", base, func(p *Params) {}},
+		{"sharp", base, func(p *Params) { p.Sharpness = 9 }},
+		{"head start", base, func(p *Params) { p.HeadStart = 1.5 }},
+		{"open share", base, func(p *Params) { p.OpenShare = 0.4 }},
+		{"distinct", base, func(p *Params) { p.Distinct = true }},
+		{"ceiling", base, func(p *Params) { p.Ceiling = 0.3 }},
+		{"ceiling for all", base, func(p *Params) { p.Ceiling = 0.01; p.Distinct = true; p.Links = 3 }},
+		{"distinct, sharp", base, func(p *Params) { p.Distinct = true; p.Sharpness = 40 }},
+		{"ceiling, sharp", base, func(p *Params) { p.Ceiling = 0.2; p.Sharpness = 2000 }},
+		{"ceiling, distinct, open, head start", base, func(p *Params) { p.Ceiling = 0.3; p.Distinct = true; p.OpenShare = 0.3; p.HeadStart = 2 }},
+		{"open and ceiling", base, func(p *Params) { p.Ceiling = 0.3; p.OpenShare = 0.7 }},
+		{"three links at once", base, func(p *Params) { p.Links = 3; p.Members = 5 }},
+		{"kernel 2", base, func(p *Params) { p.Kernel = 2 }},
+		{"kernel 0.5", base, func(p *Params) { p.Kernel = 0.5 }},
+		{"kernel 0", base, func(p *Params) { p.Kernel = UniformKernel }},
+		{"kernel 3 from one", young, func(p *Params) { p.Kernel = 3 }},
+		{"fading", young, func(p *Params) { p.Fading = 1.3 }},
+		{"idling", young, func(p *Params) { p.Idling = 1.7 }},
+		{"fading and idling", young, func(p *Params) { p.Fading, p.Idling = 3, 0.5 }},
+		{"fading from a start", base, func(p *Params) { p.Fading = 2 }},
+		{"levy", base, func(p *Params) { p.LevyAbove, p.LevyRate = 0.2, 0.8 }},
+		{"levy of all above nothing", base, func(p *Params) { p.LevyRate = 1 }},
+		{"levy from one", young, func(p *Params) { p.LevyAbove, p.LevyRate = 0.4, 0.9 }},
+		{"expiry", young, func(p *Params) { p.Expiry = 2 }},
+		{"expiry of a start", base, func(p *Params) { p.Expiry = 1; p.Members = 7; p.Links = 1 }},
+		{"expiry and levy", young, func(p *Params) { p.Expiry = 3; p.LevyAbove, p.LevyRate = 0.3, 0.5 }},
+		{"expiry and ceiling", young, func(p *Params) { p.Expiry = 1; p.Ceiling = 0.5 }},
+		{"kernel, expiry, levy", young, func(p *Params) { p.Kernel = 1.5; p.Expiry = 2; p.LevyAbove, p.LevyRate = 0.3, 0.5 }},
+		{"kernel, distinct, ceiling", base, func(p *Params) { p.Kernel = 1.5; p.Distinct = true; p.Ceiling = 0.3 }},
+		{"idling, open share, head start", young, func(p *Params) { p.Idling = 1; p.OpenShare = 0.3; p.HeadStart = 2 }},
+		{"all at once", base, func(p *Params) {
+			p.Kernel, p.Fading, p.Idling, p.HeadStart, p.OpenShare, p.Distinct, p.Ceiling, p.LevyAbove, p.LevyRate, p.Expiry = 1.4, 0.6, 0.9, 0.5, 0.2, true, 0.4, 0.25, 0.5, 1
+		}},
 	}
-	const runs = 60000
-	for name, set := range cases {
-		p := base
-		set(&p)
+	runs := 60000
+	if testing.Short() {
+		runs = 8000
+	}
+	for _, c := range cases {
+		p := c.from
+		c.set(&p)
+		from, made := 1, 0
+		if p.Start != nil {
+			from = len(p.Start.Energy)
+			for _, d := range p.Start.Received {
+				made += int(d)
+			}
+		}
 		want := map[string]float64{}
-		enumerate(p, append([]int32(nil), start.Received...), len(start.Energy), "", 1, want)
+		enumerate(p, from, want)
 		got := map[string]float64{}
 		for seed := range uint32(runs) {
 			p.Seed = seed
 			n := grow(t, p)
-			got[fmt.Sprint(n.Targets[8:])]++
+			got[fmt.Sprint(n.Targets[made:])]++
 		}
 		total, chi, cells := 0.0, 0.0, 0
 		small, smallGot := 0.0, 0.0
 		for key, w := range want {
 			total += w
-			if w*runs < 8 {
+			w *= float64(runs)
+			if w < 8 {
 				small, smallGot = small+w, smallGot+got[key]
 				continue
 			}
-			chi += (got[key] - w*runs) * (got[key] - w*runs) / (w * runs)
+			chi += (got[key] - w) * (got[key] - w) / w
 			cells++
 		}
 		for key := range got {
 			if want[key] == 0 {
-				t.Fatalf("%s: %s was drawn, but cannot be", name, key)
+				t.Fatalf("%s: %s was drawn, but cannot be", c.name, key)
 			}
 		}
-		near.Rel(t, name+": enumeration adds up", total, 1, 1e-12)
-		if small*runs > 8 {
-			chi += (smallGot - small*runs) * (smallGot - small*runs) / (small * runs)
+		near.Rel(t, c.name+": enumeration adds up", total, 1, 1e-12)
+		if small > 8 {
+			chi += (smallGot - small) * (smallGot - small) / small
 			cells++
 		}
 		if z := (chi - float64(cells)) / math.Sqrt(2*float64(cells)); z > 4.5 {
-			t.Errorf("%s: chi-square %.0f over %d cells", name, chi, cells)
+			t.Errorf("%s: chi-square %.0f over %d cells", c.name, chi, cells)
 		}
 	}
 }
 
-// enumerate walks all histories straight from the definition in the package comment.
-func enumerate(p Params, received []int32, v int, _ string, weight float64, out map[string]float64) {
-	var walk func(done []int32, now []int32, received []int32, v int, weight float64)
-	walk = func(done, now, received []int32, v int, weight float64) {
+// A past is the choices of each newcomer, in order.
+type past [][]int32
+
+// enumerate walks all histories and adds up their probabilities.
+func enumerate(p Params, from int, out map[string]float64) {
+	var walk func(done past, now []int32, weight float64)
+	walk = func(done past, now []int32, weight float64) {
+		v := from + len(done)
 		if v == p.Members {
-			out[fmt.Sprint(done)] += weight
+			all := []int32{}
+			for _, n := range done {
+				all = append(all, n...)
+			}
+			out[fmt.Sprint(all)] += weight
 			return
 		}
 		m := int(p.Links)
@@ -134,54 +182,88 @@ func enumerate(p Params, received []int32, v int, _ string, weight float64, out 
 			m = min(m, v)
 		}
 		if len(now) == m {
-			after := append([]int32(nil), received...)
-			after = append(after, 0)
-			for _, j := range now {
-				after[j]++
-			}
-			walk(append(append([]int32(nil), done...), now...), nil, after, v+1, weight)
+			walk(append(append(past(nil), done...), now), nil, weight)
 			return
 		}
-		for j, q := range chances(p, now, received, v) {
+		for j, q := range chances(p, from, done, now) {
 			if q > 0 {
-				walk(done, append(append([]int32(nil), now...), int32(j)), received, v, weight*q)
+				walk(done, append(append([]int32(nil), now...), int32(j)), weight*q)
 			}
 		}
 	}
-	walk(nil, nil, received, v, weight)
+	walk(nil, nil, 1)
 }
 
-func chances(p Params, now, received []int32, v int) []float64 {
-	links := 0.0
-	for _, d := range received {
-		links += float64(d)
+// chances returns the probabilities of the next link of the newcomer at hand, from the definitions alone.
+func chances(p Params, from int, done past, now []int32) []float64 {
+	energy := make([]float64, from+len(done))
+	if p.Start != nil {
+		copy(energy, p.Start.Energy)
+	}
+	return weigh(p, from, energy, done, now)
+}
+
+// chancesOf is chances for the first link of the newcomer after a history from one member, of any energies.
+func chancesOf(p Params, energy []float64, done past) []float64 {
+	return weigh(p, 1, energy, done, nil)
+}
+
+func weigh(p Params, from int, energy []float64, done past, now []int32) []float64 {
+	v := from + len(done)
+	all, counting, last := make([]float64, v), make([]float64, v), make([]int, v)
+	links, live := 0.0, 0.0
+	for j := range v {
+		last[j] = j
+		if j < from && p.Start != nil {
+			d := float64(p.Start.Received[j])
+			all[j] += d
+			links += d
+			if p.Expiry == 0 || v-(from-1) <= p.Expiry { // made when the start ended
+				counting[j] += d
+				live += d
+			}
+		}
+	}
+	for i, choices := range done {
+		u := from + i
+		for _, j := range choices {
+			all[j]++
+			links++
+			last[j] = u
+			if p.Expiry == 0 || v-u <= p.Expiry {
+				counting[j]++
+				live++
+			}
+		}
 	}
 	taken := func(j int) bool { return p.Distinct && has(now, int32(j)) }
-	closed := func(j int) bool { return p.Ceiling > 0 && received[j] > 0 && float64(received[j]) >= p.Ceiling*links }
+	closed := func(j int) bool { return p.Ceiling > 0 && all[j] > 0 && all[j] >= p.Ceiling*links }
 	free := 0
 	for j := range v {
 		if !taken(j) && !closed(j) {
 			free++
 		}
 	}
-	least := math.Inf(1)
-	energy := func(j int) float64 {
-		if j < len(p.Start.Energy) {
-			return p.Start.Energy[j]
-		}
-		return 0
-	}
 	ok := func(j int) bool { return !taken(j) && (free == 0 || !closed(j)) }
+	least := math.Inf(1)
 	for j := range v {
 		if ok(j) {
-			least = math.Min(least, energy(j))
+			least = math.Min(least, energy[j])
 		}
+	}
+	alpha := map[float64]float64{0: 1, UniformKernel: 0}[p.Kernel]
+	if p.Kernel > 0 {
+		alpha = p.Kernel
 	}
 	fit, open := make([]float64, v), make([]float64, v)
 	sumFit, sumOpen := 0.0, 0.0
 	for j := range v {
 		if ok(j) {
-			fit[j] = math.Exp(-p.Sharpness*(energy(j)-least)) * (p.Links + p.HeadStart + float64(received[j]))
+			d := counting[j]
+			if p.LevyRate > 0 {
+				d = math.Min(d, p.LevyAbove*live) + (1-p.LevyRate)*math.Max(0, d-p.LevyAbove*live)
+			}
+			fit[j] = math.Exp(-p.Sharpness*(energy[j]-least)) * math.Pow(p.Links+p.HeadStart+d, alpha) * math.Pow(float64(v-j), -p.Fading) * math.Pow(float64(v-last[j]), -p.Idling)
 			open[j] = 1
 			sumFit += fit[j]
 			sumOpen++
@@ -216,6 +298,9 @@ func TestSharpnessNeverHangs(t *testing.T) {
 		{Law: law.Power{Theta: 1}, Sharpness: 1e6, Links: 2, Ceiling: .1},
 		{Law: law.Power{Theta: 1}, Sharpness: 200, Links: 64, Distinct: true},
 		{Law: law.Lognormal{Sigma: 20}, Sharpness: 100, Links: 1, OpenShare: 1, Ceiling: .001},
+		{Law: law.Power{Theta: 1}, Sharpness: 1e6, Links: 2, Kernel: 3, Distinct: true},
+		{Law: law.Power{Theta: 1}, Sharpness: 50, Links: 2, Kernel: 3, Ceiling: .05, Fading: 3, Idling: 3},
+		{Law: law.Power{Theta: 1}, Sharpness: 1e6, Links: 2, LevyAbove: .01, LevyRate: 1, Expiry: 1},
 	} {
 		p.Members, p.Seed = 3000, 2
 		if n := grow(t, p); n.LinksBefore(n.Members) != len(n.Targets) {
@@ -265,6 +350,122 @@ func TestDigestIsPinned(t *testing.T) {
 	n := grow(t, Params{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, Members: 5000, Seed: 1})
 	if got := n.Digest(); got != "d8bb7181b7bd9f7ca9d4f6d597d73883ec76e3b4809c7e3d36b1da0b8bfb28f5" {
 		t.Errorf("digest %s", got)
+	}
+}
+
+// TestRungsAgainstScan grows the same network by the tree's bounds and straight from the weights: the shares of links by
+// level must agree, since an error in climbing rungs would bias the old or the idle.
+func TestRungsAgainstScan(t *testing.T) {
+	p := Params{Law: law.Power{Theta: 1}, Sharpness: 1, Links: 2, Members: 300, Kernel: 1.2, Fading: .8, Idling: .7}
+	const runs = 600
+	tenths := func(d []int32) (out [10]float64) {
+		for j, k := range d {
+			out[j*10/len(d)] += float64(k)
+		}
+		return out
+	}
+	var tree, scan [10][runs]float64
+	for i := range runs {
+		p.Seed = uint32(i)
+		n := grow(t, p)
+		a := tenths(n.Received(n.Members))
+		p.Seed += 10000
+		b := tenths(slowly(t, p))
+		for k := range a {
+			tree[k][i], scan[k][i] = a[k], b[k]
+		}
+	}
+	for k := range tree {
+		a, sa := stat.MeanStdDev(tree[k][:], nil)
+		b, sb := stat.MeanStdDev(scan[k][:], nil)
+		if z := (a - b) / math.Sqrt((sa*sa+sb*sb)/runs); math.Abs(z) > 4 {
+			t.Errorf("members of the %d. tenth hold %.2f links by the tree, %.2f by the weights, z = %.1f", k+1, a, b, z)
+		}
+	}
+}
+
+// TestStartWithHistory goes on from a network that was grown here: what the next newcomer chooses must not depend on
+// whether growth paused.
+func TestStartWithHistory(t *testing.T) {
+	p := Params{Law: law.Power{Theta: 1}, Sharpness: 2, Links: 2, Members: 60, Seed: 4, Fading: .5, Idling: 1, Expiry: 20}
+	base := grow(t, p)
+	start := &Start{Energy: base.Energy, Received: base.Received(60), History: base}
+	done := past{}
+	for v := 1; v < 60; v++ {
+		done = append(done, base.Targets[base.LinksBefore(v):base.LinksBefore(v+1)])
+	}
+	q := p
+	q.Start = &Start{Energy: base.Energy[:1], Received: []int32{0}}
+	want := chancesOf(q, base.Energy, done)
+	const runs = 20000
+	got := make([]float64, 60)
+	for seed := range uint32(runs) {
+		p.Seed, p.Members, p.Start = seed, 61, start
+		n := grow(t, p)
+		got[n.Targets[len(base.Targets)]]++
+	}
+	chi, cells := 0.0, 0
+	for j, w := range want {
+		if e := w * runs; e > 5 {
+			chi += (got[j] - e) * (got[j] - e) / e
+			cells++
+		}
+	}
+	if z := (chi - float64(cells)) / math.Sqrt(2*float64(cells)); z > 4.5 {
+		t.Errorf("chi-square %.0f over %d members", chi, cells)
+	}
+}
+
+// slowly grows a network from the definitions, every weight computed anew for every link.
+func slowly(t *testing.T, p Params) []int32 {
+	t.Helper()
+	r := exact.Key(p.Seed, 99)
+	energy := make([]float64, p.Members)
+	received, last := make([]int32, p.Members), make([]int, p.Members)
+	next := uint64(0)
+	unit := func() float64 { next++; return exact.Unit(exact.Bits(r, next, 0)) }
+	for v := range p.Members {
+		energy[v], last[v] = p.Law.Quantile(unit()), v
+		if v == 0 {
+			continue
+		}
+		w := make([]float64, v)
+		sum := 0.0
+		for j := range v {
+			w[j] = math.Exp(-p.Sharpness*energy[j]) * math.Pow(p.Links+float64(received[j]), p.Kernel) * math.Pow(float64(v-j), -p.Fading) * math.Pow(float64(v-last[j]), -p.Idling)
+			sum += w[j]
+		}
+		var to []int
+		for range int(p.Links) {
+			x, j := unit()*sum, 0
+			for x -= w[0]; x >= 0 && j+1 < v; x -= w[j] {
+				j++
+			}
+			to = append(to, j)
+		}
+		for _, j := range to {
+			received[j]++
+			last[j] = v
+		}
+	}
+	return received
+}
+
+// How levers cost: against the plain rule in the same run.
+func BenchmarkLevers(b *testing.B) {
+	for _, c := range []struct {
+		name string
+		set  func(p *Params)
+	}{{"plain", func(p *Params) {}}, {"head start", func(p *Params) { p.HeadStart = 2 }}, {"open share", func(p *Params) { p.OpenShare = .2 }}, {"distinct", func(p *Params) { p.Distinct = true }}, {"ceiling", func(p *Params) { p.Ceiling = .1 }},
+		{"levy", func(p *Params) { p.LevyAbove, p.LevyRate = .05, .5 }}, {"expiry", func(p *Params) { p.Expiry = 10000 }}, {"kernel", func(p *Params) { p.Kernel = 1.2 }}, {"fading", func(p *Params) { p.Fading = 1 }}, {"idling", func(p *Params) { p.Idling = 1 }}} {
+		b.Run(c.name, func(b *testing.B) {
+			p := Params{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, Members: 1e5, Seed: 1}
+			c.set(&p)
+			for b.Loop() {
+				grow(b, p)
+			}
+			b.ReportMetric(2e5*float64(b.N)/b.Elapsed().Seconds()/1e6, "Mlinks/s")
+		})
 	}
 }
 

@@ -1,17 +1,26 @@
 // Package growth grows a network one member at a time, by keyed draws.
 //
 // A newcomer v brings m links. Each goes, with probability r (the open share), to a member drawn uniformly from those
-// present; otherwise to member j with probability proportional to eta_j T_j, where
+// present; otherwise to member j with probability proportional to
+//
+//	eta_j T_j^alpha age_j^-nu idle_j^-mu
+//
+// all as they stood before v came, where
 //
 //	eta_j = exp(-beta eps_j)      fitness
 //	T_j   = m + a + d_j           tickets: links it brings, head start, links received
+//	alpha                         kernel, 1 in the plain rule
+//	age_j = v - j                 arrivals since it came; nu is the fading
+//	idle_j = v - last_j           arrivals since it last came, or received a link; mu is the idling
 //
-// all as they stood before v came. Member 0 is alone at first; member 1 puts its m links on it.
+// Member 0 is alone at first; member 1 puts its m links on it. MODEL.md states every lever:
 //
 //	distinct  a newcomer's links go to different members, drawn one after another without replacement; while fewer than m
 //	          members are there, it makes one to each
 //	ceiling c a member with d_j >= c L, L all links before the newcomer came, takes none; if every member a link could go
 //	          to stands at the ceiling, the ceiling does not hold for that link
+//	levy      of the links received, those above the share "above" of all count only 1 - rate as tickets
+//	expiry x  links made more than x arrivals ago count neither in d_j nor in L, but for the ceiling
 package growth
 
 import (
@@ -35,6 +44,12 @@ type Params struct {
 	HeadStart  float64 // a >= 0
 	OpenShare  float64 // r in [0, 1]
 	Ceiling    float64 // share of all links, 0 = none
+	Kernel     float64 // alpha in [0, 3]; 0 stands for 1, UniformKernel for 0
+	Fading     float64 // nu in [0, 3]
+	Idling     float64 // mu in [0, 3]
+	LevyAbove  float64 // share of all links above which links count less
+	LevyRate   float64 // by how much, 0 = no levy
+	Expiry     int     // arrivals after which a link counts no more, 0 = never
 	Distinct   bool
 	Members    int // size to grow to
 	LeversFrom int // size at which the levers come into force; 0 = from the start
@@ -42,11 +57,29 @@ type Params struct {
 	Start      *Start // nil: member 0 alone
 }
 
+// UniformKernel is the kernel 0: tickets count for nothing. (The zero value of Params is the plain rule.)
+const UniformKernel = -1
+
+// Timed reports whether growth needs to know when links were made and members were last active.
+func (p Params) Timed() bool { return p.Fading > 0 || p.Idling > 0 || p.Expiry > 0 }
+
+// alpha returns the exponent of the tickets.
+func (p Params) alpha() float64 {
+	switch p.Kernel {
+	case 0:
+		return 1
+	case UniformKernel:
+		return 0
+	}
+	return p.Kernel
+}
+
 // A Start is a network that already stands: energies, ranks (may be nil) and links received of its members.
 type Start struct {
 	Energy   []float64
 	Rank     []float32
 	Received []int32
+	History  *Network // the network it is, if it was grown here: when each link was made; nil where that is not known
 }
 
 // A Network is what growth leaves: a network of N members holds every smaller one.

@@ -1,52 +1,75 @@
 package growth
 
-// A sumTree holds non-negative weights under a binary tree of their sums; parents are recomputed, never adjusted, so no
-// rounding error builds up.
+// fan is how many children a node has: as many sums as fill a line of the processor's cache.
+const fan = 8
+
+// A sumTree holds non-negative weights under a tree of their sums; parents are recomputed, never adjusted, so no rounding
+// error builds up.
 type sumTree struct {
-	size int // leaves, a power of two
-	node []float64
+	level [][]float64 // the weights first, then their sums, up to one node
 }
 
 func newSumTree(leaves int) *sumTree {
-	size := 1
-	for size < leaves {
-		size *= 2
+	t := &sumTree{}
+	for n := max(leaves, 1); ; n = (n + fan - 1) / fan {
+		room := (n + fan - 1) / fan * fan
+		t.level = append(t.level, make([]float64, room))
+		if n == 1 {
+			return t
+		}
 	}
-	return &sumTree{size, make([]float64, 2*size)}
 }
 
-func (t *sumTree) total() float64 { return t.node[1] }
+func (t *sumTree) total() float64 { return t.level[len(t.level)-1][0] }
+
+// sum adds up the children of node i of the level above.
+func sum(nodes []float64, i int) float64 {
+	c := nodes[i*fan : i*fan+fan : i*fan+fan]
+	return ((c[0] + c[1]) + (c[2] + c[3])) + ((c[4] + c[5]) + (c[6] + c[7]))
+}
 
 func (t *sumTree) set(j int, w float64) {
-	i := t.size + j
-	t.node[i] = w
-	for i >>= 1; i >= 1; i >>= 1 {
-		t.node[i] = t.node[2*i] + t.node[2*i+1]
+	nodes := t.level[0]
+	nodes[j] = w
+	for _, up := range t.level[1:] {
+		j /= fan
+		up[j] = sum(nodes, j)
+		nodes = up
 	}
 }
 
 func (t *sumTree) fill(n int, weight func(j int) float64) {
-	for j := range t.size {
+	leaves := t.level[0]
+	for j := range leaves {
+		leaves[j] = 0
 		if j < n {
-			t.node[t.size+j] = weight(j)
-		} else {
-			t.node[t.size+j] = 0
+			leaves[j] = weight(j)
 		}
 	}
-	for i := t.size - 1; i >= 1; i-- {
-		t.node[i] = t.node[2*i] + t.node[2*i+1]
+	for k, up := range t.level[1:] {
+		for i := range len(t.level[k]) / fan {
+			up[i] = sum(t.level[k], i)
+		}
 	}
 }
 
 // find returns the leaf at x on the line of all weights, 0 <= x < total.
 func (t *sumTree) find(x float64) int {
-	i := 1
-	for i < t.size {
-		i *= 2
-		if left := t.node[i]; x >= left && t.node[i+1] > 0 {
-			x -= left
-			i++
+	i := 0
+	for k := len(t.level) - 2; k >= 0; k-- {
+		c := t.level[k][i*fan : i*fan+fan : i*fan+fan]
+		i *= fan
+		last := 0 // the last child with any weight takes what rounding leaves over
+		for s, w := range c {
+			if w > 0 {
+				last = s
+				if x < w {
+					break
+				}
+				x -= w
+			}
 		}
+		i += last
 	}
-	return i - t.size
+	return i
 }

@@ -65,6 +65,9 @@ func New(p Plan, from, to int, step func(done float64) error) (*Part, error) {
 			return nil, err
 		}
 		base = &growth.Start{Energy: n.Energy, Received: n.Received(members)}
+		if p.Growth.Timed() {
+			base.History = n
+		}
 	} else {
 		base = p.Evidence.Start(p.Evidence.LawOf(0).Make(), p.Growth.Seed, 0)
 	}

@@ -154,7 +154,7 @@ func solve(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 	if err != nil {
 		return reply{}, err
 	}
-	facts := standing.Facts{Solution: s, Ceiling: e.Growth.Ceiling, Distinct: e.Growth.Distinct, Links: e.Growth.Links, Late: e.Growth.LeversFrom, Planned: float64(e.Outlook.Horizon), Beta: beta}
+	facts := standing.Facts{Solution: s, Ceiling: e.Growth.Ceiling, Kernel: e.Growth.Kernel, Outside: outside(e.Growth), Distinct: e.Growth.Distinct, Links: e.Growth.Links, Late: e.Growth.LeversFrom, Planned: float64(e.Outlook.Horizon), Beta: beta}
 	if ask.Planned > 0 {
 		facts.Planned = float64(ask.Planned)
 	}
@@ -187,6 +187,20 @@ func solve(_ *Engine, p wire.Packet, _ Step) (reply, error) {
 	}
 	r.body = out
 	return r, nil
+}
+
+// outside names the levers in force, but kernel and ceiling, that the theory does not cover.
+func outside(g casebook.Growth) []string {
+	var names []string
+	for _, r := range []struct {
+		on   bool
+		name string
+	}{{g.Fading > 0, "fading"}, {g.Idling > 0, "idling"}, {g.Levy.Rate > 0, "a levy"}, {g.Expiry > 0, "expiry"}} {
+		if r.on {
+			names = append(names, r.name)
+		}
+	}
+	return names
 }
 
 func edgeOf(l law.Law) Edge {
@@ -295,6 +309,11 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 	received := n.Received(n.Members)
 	s := share.Of(received)
 	betaMu := n.BetaMu(received)
+	g := c.Entries[ask.Entry].Growth
+	covered := g.Kernel == 1 && len(outside(g)) == 0
+	if !covered {
+		betaMu = math.NaN() // what it stands for is not the pull newcomers feel
+	}
 	name := namer(c, n.From())
 	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
 		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], math.Exp(-n.Sharpness * n.Energy[s.Leader]), s.Leader}}
@@ -310,7 +329,10 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 		}
 		out.Reigns = path.Reigns
 		out.Path = &Path{path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Followed}
-		out.Counted = counted(n, received)
+		out.Counted = []Counted{}
+		if covered {
+			out.Counted = counted(n, received)
+		}
 		r.columns = columns(n)
 	}
 	r.body = out

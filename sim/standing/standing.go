@@ -12,7 +12,9 @@ import (
 // Facts are what a verdict speaks of.
 type Facts struct {
 	Solution bose.Solution
-	Ceiling  float64 // 0 = none
+	Ceiling  float64  // 0 = none
+	Kernel   float64  // 1 in the plain rule
+	Outside  []string // other levers the theory does not cover, by their names in a sentence
 	Distinct bool
 	Links    float64
 	Late     int // size at which levers begin, 0 = from the start
@@ -68,13 +70,47 @@ func Describe(f Facts) Verdict {
 	if f.Reach != nil && f.Planned > 1 {
 		v.AtSize = atSize(f)
 	}
-	if f.Ceiling > 0 {
+	if len(f.Outside) > 0 || f.Kernel != 1 {
+		v.outside(f)
+	} else if f.Ceiling > 0 {
 		v.AtSize = ""
 		v.lever(f, s)
 	} else if f.Distinct && s.Regime == bose.Condensate {
 		v.Reason = fmt.Sprintf("Distinct partners keep any one member at %s of all links or below.", Percent(1/math.Max(1, f.Links)))
 	}
 	return v
+}
+
+// outside rewrites the verdict where levers are in force that the theory does not cover.
+func (v *Verdict) outside(f Facts) {
+	names := f.Outside
+	if f.Ceiling > 0 {
+		names = append(names, "a ceiling")
+	}
+	plain := v.Heading
+	v.AtSize = ""
+	v.Reason = fmt.Sprintf("Figures and curves are those of the rule without: %s.", lower(plain))
+	switch {
+	case len(names) == 0 && f.Kernel > 1:
+		v.Regime, v.Heading = bose.Gelation, "Gelation"
+		v.Line = "With a kernel above 1 one member takes nearly all links in endless growth, whatever the fitness."
+		if f.Distinct {
+			v.Line = fmt.Sprintf("With a kernel above 1 a few members take nearly all links in endless growth; distinct partners keep each at %s or below.", Percent(1/math.Max(1, f.Links)))
+		}
+	case len(names) == 0:
+		v.Regime, v.Heading = bose.Sublinear, "Sublinear"
+		v.Line = "With a kernel below 1 every share fades in endless growth, whatever the fitness."
+	default:
+		if f.Kernel != 1 {
+			names = append(names, "a kernel")
+		}
+		list := names[0]
+		if n := len(names); n > 1 {
+			list = strings.Join(names[:n-1], ", ") + " and " + names[n-1]
+		}
+		v.Regime, v.Heading = bose.Unknown, "No limit verdict"
+		v.Line = fmt.Sprintf("The theory of endless growth does not cover %s; the outlook answers.", list)
+	}
 }
 
 // lever rewrites the verdict where a ceiling holds: no limit is known then.

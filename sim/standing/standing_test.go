@@ -26,9 +26,32 @@ func TestSentences(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		v := Describe(Facts{Solution: s, Ceiling: c.ceiling, Links: 2})
+		v := Describe(Facts{Solution: s, Ceiling: c.ceiling, Kernel: 1, Links: 2})
 		if v.Heading != c.heading || v.Line != c.line {
 			t.Errorf("%#v at %g: %q %q", c.l, c.beta, v.Heading, v.Line)
+		}
+	}
+}
+
+func TestLeversOutsideTheTheory(t *testing.T) {
+	s, err := bose.Solve(law.Power{Theta: 1}, 3, bose.Rule{Links: 2})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		f             Facts
+		regime        bose.Regime
+		line, because string
+	}{
+		{Facts{Kernel: 1.2}, bose.Gelation, "With a kernel above 1 one member takes nearly all links in endless growth, whatever the fitness.", "Figures and curves are those of the rule without: condensate."},
+		{Facts{Kernel: 1.2, Distinct: true, Links: 4}, bose.Gelation, "With a kernel above 1 a few members take nearly all links in endless growth; distinct partners keep each at 25 % or below.", "Figures and curves are those of the rule without: condensate."},
+		{Facts{Kernel: 0.5}, bose.Sublinear, "With a kernel below 1 every share fades in endless growth, whatever the fitness.", "Figures and curves are those of the rule without: condensate."},
+		{Facts{Kernel: 2, Outside: []string{"fading", "a levy"}, Ceiling: .1}, bose.Unknown, "The theory of endless growth does not cover fading, a levy, a ceiling and a kernel; the outlook answers.", "Figures and curves are those of the rule without: condensate."},
+		{Facts{Kernel: 1, Outside: []string{"expiry"}}, bose.Unknown, "The theory of endless growth does not cover expiry; the outlook answers.", "Figures and curves are those of the rule without: condensate."},
+	} {
+		c.f.Solution = s
+		if v := Describe(c.f); v.Regime != c.regime || v.Line != c.line || v.Reason != c.because {
+			t.Errorf("%+v: %+v", c.f, v)
 		}
 	}
 }
@@ -54,7 +77,7 @@ func TestAtSize(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		f := Facts{Solution: s, Links: 2, Planned: c.n, Beta: c.beta}
+		f := Facts{Solution: s, Kernel: 1, Links: 2, Planned: c.n, Beta: c.beta}
 		if s.Regime == bose.Records {
 			top := bose.TopOf(c.l, c.n)
 			f.Top = &top

@@ -61,7 +61,7 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
       {critical !== null && <p class="buttons"><button type="button" disabled={sharp === critical} onClick={() => editEntry((e) => ({ ...e, sharpness: critical }))}>Go to the critical sharpness {number(critical)}</button></p>}
       <dl class="pairs">
         <div><dt>Chemical potential μ</dt><dd>{s.regime === "records" ? "none" : sharp === 0 ? "−∞" : number(s.mu ?? 0)} <small>{s.condensate > 0 ? "at the ground level" : "in endless growth"}</small></dd></div>
-        <div><dt>μ at this size</dt><dd>{sharp === 0 ? "−∞" : number(g?.muAtSize, "not yet")} <small>counted at {count(g?.members ?? 0)}</small></dd></div>
+        <div><dt>μ at this size</dt><dd>{sharp === 0 ? "−∞" : g ? number(g.muAtSize, "none") : "not yet"} <small>counted at {count(g?.members ?? 0)}</small></dd></div>
         <div><dt>Condensate, endless growth</dt><dd>{percent(s.condensate)} <small>of all links</small></dd></div>
         <div><dt>Margin</dt><dd>{number(s.margin, s.regime === "records" ? "none" : "∞")} <small>condensate below 1</small></dd></div>
       </dl>
@@ -82,7 +82,7 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
           table={() => ({ columns: ["energy", "f"], rows: (s.curves?.eps ?? []).map((e, i) => [e, s.curves?.exponent?.[i] ?? ""]) })}
         />
         <Figure
-          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted.length ?? 0} open circles: links counted at each level of this very network at its full size, with one standard error.`} of={[s, g, h]} draw={(w) => occupation(s, g, h, w)}
+          title="Links held n(ε)" name="occupation" summary={`The Bose curve, and ${g?.counted?.length ?? 0} open circles: links counted at each level of this very network at its full size, with one standard error.`} of={[s, g, h]} draw={(w) => occupation(s, g, h, w)}
           table={() => ({ columns: ["energy", "n of the theory", "counted n", "standard error", "members"], rows: [...(g?.counted ?? []).map((c) => [c.eps, "", c.n, c.error, c.members]), ...(s.curves?.eps ?? []).map((e, i) => [e, s.curves?.occupation?.[i] ?? "infinite", "", "", ""])] })}
         />
         <Figure
@@ -90,7 +90,7 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
           table={() => ({ columns: ["sharpness", "beta mu"], rows: (s.curves?.beta ?? []).map((b, i) => [b, s.curves?.betaMuOver?.[i] ?? ""]) })}
         />
       </div>}
-      {s.regime !== "records" && <p class="caption">Circles: links counted at each level of this network at its full size. In a condensate they lie above the curve while the ground level is still filling.</p>}
+      {(g?.counted?.length ?? 0) > 0 && s.regime !== "records" && <p class="caption">Circles: links counted at each level of this network at its full size. In a condensate they lie above the curve while the ground level is still filling.</p>}
     </Section>
   );
 }
@@ -171,6 +171,13 @@ export function OutlookSection(p: { entry: Entry }): JSX.Element {
   );
 }
 
+/** A lever's name may lead into a part of the growth: "levy.rate". */
+const leverOf = (g: Entry["growth"], name: string): unknown => name.split(".").reduce<unknown>((at, part) => (at as Record<string, unknown> | undefined)?.[part], g);
+const withLever = (g: Entry["growth"], name: string, v: number | boolean): Partial<Entry["growth"]> => {
+  const [part = name, inner] = name.split(".");
+  return { [part]: inner === undefined ? v : { ...(g[part] as object), [inner]: v } };
+};
+
 export function LeversSection(p: { entry: Entry }): JSX.Element | null {
   const t = tables.value;
   const s = standing();
@@ -180,9 +187,9 @@ export function LeversSection(p: { entry: Entry }): JSX.Element | null {
     <Section id="levers" title="Levers" aside="rules that change the choice">
       {t.levers.map((l) =>
         l.yes ? (
-          <Check key={l.name} label={l.label} help={l.help} value={Boolean(g[l.name])} onChange={(v) => setGrowth({ [l.name]: v })} />
+          <Check key={l.name} label={l.label} help={l.help} value={Boolean(leverOf(g, l.name))} onChange={(v) => setGrowth(withLever(g, l.name, v))} />
         ) : (
-          <Slider key={l.name} label={l.label} value={Number(g[l.name])} low={l.low} high={l.high} slide={l.slide} step={l.step} unit={l.unit} help={l.help} onBegin={begin} onEnd={end} onChange={(v) => setGrowth({ [l.name]: v })} />
+          <Slider key={l.name} label={l.label} value={Number(leverOf(g, l.name))} whole={l.step >= 1} low={l.low} high={l.high} slide={l.slide} step={l.step} unit={l.unit} help={l.help} onBegin={begin} onEnd={end} onChange={(v) => setGrowth(withLever(g, l.name, v))} />
         ),
       )}
       <Slider label="In force from" value={g.leversFrom} low={0} high={t.limits.members} slide={[0, 20000]} step={100} whole unit="members" help="0 is from the start; today's size makes it a rule for newcomers to come" onBegin={begin} onEnd={end} onChange={(v) => setGrowth({ leversFrom: v })} />

@@ -181,7 +181,7 @@ export interface Grown {
   ranking: { id: string; member: number; share: number; energy: number }[];
   reigns: { leader: number; from: number }[];
   path: { members: number[]; leader: number[]; share: number[]; top4: number[]; hhi: number[]; followed: number[][] };
-  counted: { eps: number; n: number; error: number; members: number }[];
+  counted?: { eps: number; n: number; error: number; members: number }[]; // none where the theory does not cover the rule
   digest?: string;
 }
 

@@ -137,3 +137,24 @@ pageTest("levels, log-normal, the other axis, and the critical sharpness", {}, a
   await says(page, "#standing .says", /the fittest is expected at .* times the middle fitness/);
   await says(page, "#standing dl div:nth-child(4) dd", /^none /);
 });
+
+pageTest("levers outside the theory say so, grow, and stand in a link", {}, async ({ page }) => {
+  await drawn(page);
+  const field = (name: string) => page.getByRole("textbox", { name, exact: true });
+  await field("Kernel α").fill("1.3");
+  await says(page, "#standing .verdict", /^Gelation\. With a kernel above 1 one member takes nearly all links in endless growth, whatever the fitness\. Figures and curves are those of the rule without: condensate\./);
+  await says(page, ".readout .lead dd", /M\d+ 9\d %/);
+  await field("Idling").fill("0.7");
+  await field("Levy").fill("0.5");
+  await field("Levy above").fill("0.1");
+  await field("Expiry").fill("800");
+  await says(page, "#standing .verdict", /^No limit verdict\. The theory of endless growth does not cover idling, a levy, expiry and a kernel; the outlook answers\./);
+  await says(page, "#standing dl div:nth-child(2) dd", /^none /);
+  const grown = command(["grow", put("levers.json", '{"casebook":1,"entries":[{"sharpness":3,"growth":{"kernel":1.3,"idling":0.7,"levy":{"above":0.1,"rate":0.5},"expiry":800}}]}')]) as { leader: { id: string; share: number } };
+  await says(page, ".readout .lead dd", new RegExp(`^${grown.leader.id} ${(100 * grown.leader.share).toFixed(grown.leader.share >= 0.0995 ? 0 : 1)} %$`));
+  // Forward from today under the same rule.
+  await field("Planned size").fill("6000");
+  await field("Runs").fill("5");
+  await page.getByRole("button", { name: "Run the outlook" }).click();
+  await says(page, "#outlook-says", /At 6,000 members the leader holds/);
+});
