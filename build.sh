@@ -41,7 +41,9 @@ case "${1:-build}" in
   build) build ;;
   run) build && exec node site/serve.mjs ;;
   test)
-    need "command -v chromium" chromium "command -v gpg" gnupg "command -v pdftotext" poppler-utils "ls /usr/share/keyrings/debian-keyring.gpg" debian-keyring "python3 -c 'import mpmath' || /usr/bin/python3 -c 'import mpmath'" python3-mpmath
+    graphs="python3 -c 'import networkx, igraph' || /usr/bin/python3 -c 'import networkx, igraph'"
+    need "command -v chromium" chromium "command -v gpg" gnupg "command -v pdftotext" poppler-utils "ls /usr/share/keyrings/debian-keyring.gpg" debian-keyring "python3 -c 'import mpmath' || /usr/bin/python3 -c 'import mpmath'" python3-mpmath \
+      "$graphs" python3-networkx "$graphs" python3-igraph
     exec bash site/test/run.sh
     ;;
   bench)

@@ -22,10 +22,12 @@ type Step func(done float64, what string) error
 // An Engine answers requests one after another and keeps what later ones refer to: the network grown last, the log read
 // last.
 type Engine struct {
-	network *growth.Network
-	rows    *evidence.Rows
-	history *evidence.History
-	label   string
+	network  *growth.Network
+	received []int32            // by its members
+	name     func(j int) string // of its members
+	rows     *evidence.Rows
+	history  *evidence.History
+	label    string
 }
 
 // A Failure says why there is no answer.

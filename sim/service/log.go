@@ -126,6 +126,6 @@ func sample(_ *Engine, _ wire.Packet, step Step) (reply, error) {
 	if err != nil {
 		return reply{}, err
 	}
-	b, err := linkLog(n, step)
+	b := logOf(n)
 	return reply{columns: []wire.Column{{Name: "file", Bytes: b}}}, err
 }

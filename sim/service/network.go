@@ -1,7 +1,6 @@
 package service
 
 import (
-	"bytes"
 	"encoding/json"
 	"fmt"
 	"math"
@@ -305,7 +304,6 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 	if err != nil {
 		return reply{}, err
 	}
-	e.network = n
 	received := n.Received(n.Members)
 	s := share.Of(received)
 	betaMu := n.BetaMu(received)
@@ -315,6 +313,7 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 		betaMu = math.NaN() // what it stands for is not the pull newcomers feel
 	}
 	name := namer(c, n.From())
+	e.network, e.received, e.name = n, received, name
 	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
 		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], math.Exp(-n.Sharpness * n.Energy[s.Leader]), s.Leader}}
 	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))])
@@ -447,29 +446,4 @@ func member(e *Engine, p wire.Packet, _ Step) (reply, error) {
 		"links": received[ask.Member], "share": float64(received[ask.Member]) / math.Max(1, float64(links)), "rank": rank, "of": ask.Size,
 		"energy": n.Energy[ask.Member], "within": n.Rank[ask.Member], "pull": float64(ask.Size) / mean, "chose": chose, "arrived": ask.Member,
 	}}, nil
-}
-
-// export answers with the network grown last as a link log: time, source, target.
-func export(e *Engine, p wire.Packet, step Step) (reply, error) {
-	if e.network == nil {
-		return reply{}, fmt.Errorf("no network has been grown yet")
-	}
-	b, err := linkLog(e.network, step)
-	return reply{columns: []wire.Column{{Name: "file", Bytes: b}}}, err
-}
-
-func linkLog(n *growth.Network, step Step) ([]byte, error) {
-	var b bytes.Buffer
-	b.WriteString("time,source,target\r\n")
-	for v := n.From(); v < n.Members; v++ {
-		if v%4096 == 0 {
-			if err := step(float64(v)/float64(n.Members), "writing the log"); err != nil {
-				return nil, err
-			}
-		}
-		for _, j := range n.Targets[n.LinksBefore(v):n.LinksBefore(v+1)] {
-			fmt.Fprintf(&b, "%d,M%d,M%d\r\n", v, v, j)
-		}
-	}
-	return b.Bytes(), nil
 }

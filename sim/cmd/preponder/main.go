@@ -1,7 +1,7 @@
 // Command preponder answers the requests of the page from a terminal.
 //
 //	preponder solve CASE [--entry k] [--curves] [--vary sharpness=0.5:8:0.1]
-//	preponder grow CASE [--entry k] [--log FILE.csv]
+//	preponder grow CASE [--entry k] [--log FILE.csv] [--degrees FILE.csv] [--graphml FILE.graphml]
 //	preponder read LOG.csv [--map source=..,target=..,time=..] [--condensed]
 //	preponder outlook CASE [--entry k] [--runs 0-199] [--partial]
 //	preponder gather PART...
@@ -52,6 +52,8 @@ type call struct {
 	partial bool
 	keep    bool
 	log     string
+	graph   string
+	degrees string
 	runs    string
 	mapping string
 	vary    string
@@ -74,6 +76,8 @@ func run(args []string, in io.Reader, out io.Writer) error {
 	flags.BoolVar(&c.partial, "partial", false, "")
 	flags.BoolVar(&c.keep, "condensed", false, "")
 	flags.StringVar(&c.log, "log", "", "")
+	flags.StringVar(&c.graph, "graphml", "", "")
+	flags.StringVar(&c.degrees, "degrees", "", "")
 	flags.StringVar(&c.runs, "runs", "", "")
 	flags.StringVar(&c.vary, "vary", "", "")
 	flags.StringVar(&c.mapping, "map", "", "")
@@ -175,16 +179,39 @@ func (c *call) grow() error {
 	if err != nil {
 		return err
 	}
-	if c.log != "" {
-		q, err := c.ask("export", nil)
-		if err != nil {
-			return err
+	for _, x := range []struct{ what, file string }{{"log", c.log}, {"graphml", c.graph}, {"degrees", c.degrees}} {
+		if x.file == "" {
+			continue
 		}
-		if err := os.WriteFile(c.log, q.Column("file").Bytes, 0o644); err != nil {
+		if err := c.export(x.what, x.file); err != nil {
 			return err
 		}
 	}
 	return c.print(p.Body)
+}
+
+// export writes the network grown last to a file, part by part.
+func (c *call) export(what, name string) error {
+	f, err := os.Create(name)
+	if err != nil {
+		return err
+	}
+	defer f.Close()
+	for part, parts := 0, 1; part < parts; part++ {
+		p, err := c.ask("export", map[string]any{"what": what, "part": part})
+		if err != nil {
+			return err
+		}
+		var d struct{ Parts int }
+		if err := json.Unmarshal(p.Body, &d); err != nil {
+			return err
+		}
+		parts = d.Parts
+		if _, err := f.Write(p.Column("file").Bytes); err != nil {
+			return err
+		}
+	}
+	return f.Close()
 }
 
 func (c *call) sample() error {

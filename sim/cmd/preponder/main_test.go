@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"os"
+	"os/exec"
 	"path/filepath"
 	"strings"
 	"testing"
@@ -52,6 +53,37 @@ func TestWalkThrough(t *testing.T) {
 	must("grow", file("one.json", `{"casebook":1,"entries":[{"growth":{"members":50}}]}`), "--log", grown)
 	if lines, err := os.ReadFile(grown); err != nil || strings.Count(string(lines), "\n") != 99 {
 		t.Errorf("the log of 50 members has %d lines, %v", strings.Count(string(lines), "\n"), err)
+	}
+}
+
+// What the command writes is read by networkx and igraph (Debian's python3-networkx and python3-igraph), and agrees.
+func TestExportsAreRead(t *testing.T) {
+	python := ""
+	for _, p := range []string{"python3", "/usr/bin/python3"} {
+		if exec.Command(p, "-c", "import networkx, igraph").Run() == nil {
+			python = p
+			break
+		}
+	}
+	if python == "" {
+		if os.Getenv("PREPONDER_REFERENCES") != "" {
+			t.Fatal("python3-networkx or python3-igraph is missing")
+		}
+		t.Skip("python3-networkx and python3-igraph are not installed; ./build.sh test installs them")
+	}
+	dir := t.TempDir()
+	file := func(name string) string { return filepath.Join(dir, name) }
+	_, err := answer(t, `{"casebook":1,"entries":[{"sharpness":2,"growth":{"members":3000,"links":3}}]}`, "grow", "-", "--graphml", file("a.graphml"), "--log", file("a.csv"), "--degrees", file("d.csv"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	out, err := exec.Command(python, "testdata/graph.py", file("a.graphml"), file("a.csv"), file("d.csv")).CombinedOutput()
+	if err != nil {
+		t.Fatalf("%v: %s", err, out)
+	}
+	want := `{"networkx": [3000, 8997, true], "igraph": [3000, 8997, true], "csv": [3000, 8997], "degrees agree": true, "edges agree": true, "energies agree": true}`
+	if string(out) != want {
+		t.Errorf("%s, want %s", out, want)
 	}
 }
 

@@ -3,10 +3,11 @@ import { signal } from "@preact/signals";
 import type { JSX } from "preact";
 import { useEffect, useState } from "preact/hooks";
 import { exponent, fan, gauge, occupation, potential, shares } from "../charts/charts";
-import { Figure } from "../charts/figure";
+import { download, Figure } from "../charts/figure";
 import { Check, Progress, Slider } from "../controls/controls";
 import { doc, editEntry, tables } from "../state/document";
 import { cancelGrowth, cancelOutlook, growAnyway, outlookKey, runOutlook } from "../state/edges";
+import { cancelWriting, networkFile, writing, type NetworkFile } from "../state/export";
 import { fault, grown, growing, held, outlookFault, outlooks, reached, running, solved, waitingToGrow } from "../state/results";
 import { projection } from "../state/document";
 import type { Entry, Outlook } from "../state/types";
@@ -95,6 +96,13 @@ export function StandingSection(p: { entry: Entry }): JSX.Element | null {
   );
 }
 
+/** The network as files. */
+const files: { what: NetworkFile; name: string; label: string; help: string }[] = [
+  { what: "log", name: "network.csv", label: "Save link log", help: "time, source, target of every link grown here, as CSV" },
+  { what: "degrees", name: "members.csv", label: "Save members", help: "arrival, energy, links and share of every member, as CSV" },
+  { what: "graphml", name: "network.graphml", label: "Save GraphML", help: "for programs that draw or analyse graphs" },
+];
+
 export function SharesSection(): JSX.Element {
   const g = grown.value?.value;
   const busy = growing.value;
@@ -117,6 +125,11 @@ export function SharesSection(): JSX.Element {
             <div><dt>Gini of links received</dt><dd>{number(g.gini)}</dd></div>
             <div><dt>Lead changes</dt><dd>{g.leadChanges}</dd></div>
           </dl>
+          {writing.value ? <Progress what="Writing the network" done={writing.value.done} onCancel={cancelWriting} /> : (
+            <div class="buttons" role="group" aria-label="Save the network">
+              {files.map((f) => <button type="button" key={f.what} title={f.help} onClick={() => void networkFile(f.what).then((b) => { if (b) download(f.name, b, b.type); })}>{f.label}</button>)}
+            </div>
+          )}
         </>
       )}
     </Section>

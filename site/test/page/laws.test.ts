@@ -1,5 +1,6 @@
 // Laws shaped by the user: drawn by hand, typed, in levels; the critical point gone to; what a drag leaves in a link.
 import assert from "node:assert/strict";
+import { readFileSync } from "node:fs";
 import { after } from "node:test";
 import type { Page } from "playwright-core";
 import { closeBrowser, command, drawn, open, pageTest, put, says, text, violations } from "../harness";
@@ -157,4 +158,23 @@ pageTest("levers outside the theory say so, grow, and stand in a link", {}, asyn
   await field("Runs").fill("5");
   await page.getByRole("button", { name: "Run the outlook" }).click();
   await says(page, "#outlook-says", /At 6,000 members the leader holds/);
+});
+
+pageTest("the network is saved as a log, a table and GraphML", {}, async ({ page }) => {
+  await drawn(page);
+  const saved = async (name: string): Promise<string> => {
+    const [download] = await Promise.all([page.waitForEvent("download"), page.getByRole("button", { name }).click()]);
+    return readFileSync(await download.path(), "utf8");
+  };
+  const log = await saved("Save link log");
+  assert.equal(log.split("\r\n").length, 2 + 2 * 4999); // a head, two links of each newcomer, a last line end
+  assert.match(log, /^time,source,target\r\n1,M1,M0\r\n1,M1,M0\r\n2,M2,/);
+  const table = await saved("Save members");
+  assert.equal(table.split("\r\n").length, 5002);
+  const links = table.split("\r\n").slice(1, -1).reduce((sum, row) => sum + Number(row.split(",")[3]), 0);
+  assert.equal(links, 9998);
+  const graph = await saved("Save GraphML");
+  assert.equal(graph.match(/<node /g)?.length, 5000);
+  assert.equal(graph.match(/<edge /g)?.length, 9998);
+  assert.ok(graph.endsWith("</graph>\n</graphml>\n"));
 });
