@@ -42,7 +42,7 @@ case "${1:-build}" in
   run) build && exec node site/serve.mjs ;;
   test)
     graphs="python3 -c 'import networkx, igraph' || /usr/bin/python3 -c 'import networkx, igraph'"
-    need "command -v chromium" chromium "command -v gpg" gnupg "command -v pdftotext" poppler-utils "ls /usr/share/keyrings/debian-keyring.gpg" debian-keyring "python3 -c 'import mpmath' || /usr/bin/python3 -c 'import mpmath'" python3-mpmath \
+    need "command -v chromium" chromium "command -v gpg" gnupg "command -v pdftotext" poppler-utils "ls /usr/share/keyrings/debian-keyring.gpg" debian-keyring "python3 -c 'import mpmath' || /usr/bin/python3 -c 'import mpmath'" python3-mpmath "command -v qemu-aarch64" qemu-user \
       "$graphs" python3-networkx "$graphs" python3-igraph
     exec bash site/test/run.sh
     ;;

@@ -67,6 +67,7 @@ type grower struct {
 	closed      []int32   // members at the ceiling
 	levied      []int32   // members above the levy's share, kept with the tree
 	tree        *sumTree  // nil while rejection works
+	wide        *wideTree // of the same weights, where they vanish; nil where they do not
 	ages        *ages     // under a kernel, fading or idling: then the tree stays
 	untilReject int       // links left before rejection is tried again
 	chosen      []int32   // by the newcomer at hand, for Distinct
@@ -79,7 +80,7 @@ func (g *grower) pullLevers() {
 	}
 	g.Network.Params = g.levers
 	g.own = g.Links + g.HeadStart
-	g.tree = nil
+	g.tree, g.wide = nil, nil
 	g.prepare(g.LeversFrom)
 }
 
@@ -209,9 +210,7 @@ func (g *grower) present(v int) {
 		return
 	}
 	g.weight[v] = exact.Exp(float64(-g.Sharpness * (e - g.best)))
-	if g.tree != nil {
-		g.tree.set(v, g.pull(int32(v)))
-	}
+	g.stir(int32(v))
 }
 
 // newcomer draws the links of member v and notes them.
@@ -227,8 +226,8 @@ func (g *grower) newcomer(v int) {
 	for range links {
 		j := g.draw(v, before)
 		g.chosen = append(g.chosen, j)
-		if g.Distinct && g.tree != nil {
-			g.tree.set(int(j), 0)
+		if g.Distinct {
+			g.hide(j)
 		}
 	}
 	g.Targets = append(g.Targets, g.chosen...)
@@ -276,7 +275,7 @@ func (g *grower) settle(v int) {
 		g.levy()
 	}
 	if g.untilReject -= len(g.chosen); g.untilReject <= 0 && g.ages == nil {
-		g.tree = nil
+		g.tree, g.wide = nil, nil
 		if g.Ceiling == 0 && g.LevyRate == 0 {
 			g.received, g.expired = nil, nil
 		}
@@ -287,6 +286,19 @@ func (g *grower) settle(v int) {
 func (g *grower) stir(j int32) {
 	if g.tree != nil {
 		g.tree.set(int(j), g.pull(j))
+	}
+	if g.wide != nil {
+		g.wide.set(int(j), g.widePull(j))
+	}
+}
+
+// hide takes j out of the trees for the rest of the newcomer at hand.
+func (g *grower) hide(j int32) {
+	if g.tree != nil {
+		g.tree.set(int(j), 0)
+	}
+	if g.wide != nil {
+		g.wide.set(int(j), wide{})
 	}
 }
 
@@ -351,6 +363,18 @@ func (g *grower) pull(j int32) float64 {
 		return float64(g.weight[j] * t)
 	}
 	return float64(float64(g.weight[j]*g.raised(t)) * g.bound(j))
+}
+
+// widePull is pull without an end to its range.
+func (g *grower) widePull(j int32) wide {
+	if has(g.closed, j) {
+		return wide{}
+	}
+	w := float64(-g.Sharpness*(g.Energy[j]-g.best)) + float64(g.alpha()*exact.Log(g.tickets(j)))
+	if g.ages != nil {
+		w += exact.Log(g.bound(j))
+	}
+	return wideOf(w)
 }
 
 // logPull returns the logarithm of the weight of j, its fitness relative to the best.
@@ -442,20 +466,37 @@ func (g *grower) plant(v int) {
 		if g.LevyRate > 0 && g.over(int32(j)) {
 			g.levied = append(g.levied, int32(j))
 		}
-		if g.Distinct && has(g.chosen, int32(j)) {
+		if g.barred(int32(j)) {
 			return 0
 		}
 		return g.pull(int32(j))
 	})
+	g.wide = nil
 }
 
-// drawExact returns a member with the exact probability, from the tree; under fading and idling the tree holds bounds, and
-// a draw is taken in the share its weight has of the bound. Where no member with weight above the smallest number is open,
-// it compares in logs instead.
+// drawExact returns a member with the exact probability, from the tree, or from the wide one where no member with weight
+// above the smallest number is open; under fading and idling trees hold bounds, and a draw is taken in the share its weight
+// has of the bound. Where nobody is open it compares in logs.
 func (g *grower) drawExact(v int, index uint64) int32 {
-	for try := uint64(tries); try < 4*tries && g.tree.total() > 1e-280; try++ {
+	vanished := g.tree.total() <= 1e-280
+	if vanished && g.wide == nil {
+		g.wide = newWideTree(g.Members)
+		g.wide.fill(v, func(j int) wide {
+			if g.barred(int32(j)) {
+				return wide{}
+			}
+			return g.widePull(int32(j))
+		})
+	}
+	for try := uint64(tries); try < 4*tries && !(vanished && g.wide.empty()); try++ {
 		bits := exact.Bits(g.key, index, try)
-		j := int32(g.tree.find(float64(exact.Unit(bits) * g.tree.total())))
+		u := exact.Unit(bits)
+		var j int32
+		if vanished {
+			j = int32(g.wide.find(u))
+		} else {
+			j = int32(g.tree.find(float64(u * g.tree.total())))
+		}
 		if g.ages == nil || exact.Unit(exact.Again(bits)) < g.share(j) {
 			return j
 		}

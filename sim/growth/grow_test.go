@@ -71,6 +71,10 @@ func TestAgainstEnumeration(t *testing.T) {
 	start := &Start{Energy: []float64{0.9, 0.3, 0.6, 0.5}, Received: []int32{4, 1, 0, 3}}
 	// From a start two newcomers come; from one member five, each of the energy of the only level.
 	base := Params{Law: law.NewTiers([]float64{0}, []float64{1}), Sharpness: 2, Links: 2, Members: 6, Start: start}
+	// Two newcomers after members one of whom is the fittest for good.
+	dull := base
+	dull.Start = &Start{Energy: []float64{0, 0.3, 0.3002, 0.0003}, Received: []int32{4, 1, 0, 3}}
+	dull.Law = law.NewTiers([]float64{0}, []float64{1})
 	young := Params{Law: law.NewTiers([]float64{0}, []float64{1}), Links: 1, Members: 6}
 	cases := []struct {
 		name string
@@ -107,6 +111,9 @@ func TestAgainstEnumeration(t *testing.T) {
 		{"kernel, expiry, levy", young, func(p *Params) { p.Kernel = 1.5; p.Expiry = 2; p.LevyAbove, p.LevyRate = 0.3, 0.5 }},
 		{"kernel, distinct, ceiling", base, func(p *Params) { p.Kernel = 1.5; p.Distinct = true; p.Ceiling = 0.3 }},
 		{"idling, open share, head start", young, func(p *Params) { p.Idling = 1; p.OpenShare = 0.3; p.HeadStart = 2 }},
+		{"kernel, distinct, nobody fitter comes", dull, func(p *Params) { p.Kernel = 1.5; p.Distinct = true }},
+		{"sharp, distinct, ceiling, nobody fitter comes", dull, func(p *Params) { p.Distinct = true; p.Ceiling = 0.4; p.Sharpness = 3000 }},
+		{"idling, distinct, ceiling, nobody fitter comes", dull, func(p *Params) { p.Idling = 1; p.Distinct = true; p.Ceiling = 0.4; p.Sharpness = 3000 }},
 		{"all at once", base, func(p *Params) {
 			p.Kernel, p.Fading, p.Idling, p.HeadStart, p.OpenShare, p.Distinct, p.Ceiling, p.LevyAbove, p.LevyRate, p.Expiry = 1.4, 0.6, 0.9, 0.5, 0.2, true, 0.4, 0.25, 0.5, 1
 		}},
@@ -332,24 +339,30 @@ func TestLeversFrom(t *testing.T) {
 }
 
 func TestDraggingKeepsLinks(t *testing.T) {
-	a := grow(t, Params{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, Members: 20000, Seed: 1})
-	b := grow(t, Params{Law: law.Power{Theta: 1}, Sharpness: 3.03, Links: 2, Members: 20000, Seed: 1})
-	same := 0
-	for i := range a.Targets {
-		if a.Targets[i] == b.Targets[i] {
-			same++
+	// Sharpness moves by 1 % in each phase, and the law by 1 % of its exponent: members keep their rank in it.
+	for _, c := range []struct {
+		name     string
+		from, to Params
+	}{
+		{"fit-get-rich", Params{Law: law.Power{Theta: 1}, Sharpness: 1}, Params{Law: law.Power{Theta: 1}, Sharpness: 1.01}},
+		{"near the transition", Params{Law: law.Power{Theta: 1}, Sharpness: 1.4}, Params{Law: law.Power{Theta: 1}, Sharpness: 1.414}},
+		{"condensate", Params{Law: law.Power{Theta: 1}, Sharpness: 3}, Params{Law: law.Power{Theta: 1}, Sharpness: 3.03}},
+		{"the law", Params{Law: law.Power{Theta: 1}, Sharpness: 3}, Params{Law: law.Power{Theta: 1.01}, Sharpness: 3}},
+	} {
+		c.from.Links, c.from.Members, c.from.Seed = 2, 20000, 1
+		c.to.Links, c.to.Members, c.to.Seed = 2, 20000, 1
+		a, b := grow(t, c.from), grow(t, c.to)
+		same := 0
+		for i := range a.Targets {
+			if a.Targets[i] == b.Targets[i] {
+				same++
+			}
 		}
-	}
-	if share := float64(same) / float64(len(a.Targets)); share < 0.9 {
-		t.Errorf("%.3f of the links stay when sharpness moves by 1 %%", share)
-	}
-}
-
-func TestDigestIsPinned(t *testing.T) {
-	// The same network everywhere: also checked in the browser by the page tests. Made by this program.
-	n := grow(t, Params{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, Members: 5000, Seed: 1})
-	if got := n.Digest(); got != "d8bb7181b7bd9f7ca9d4f6d597d73883ec76e3b4809c7e3d36b1da0b8bfb28f5" {
-		t.Errorf("digest %s", got)
+		share := float64(same) / float64(len(a.Targets))
+		t.Logf("%s: %.3f of the links stay", c.name, share)
+		if share < 0.9 {
+			t.Errorf("%s: %.3f of the links stay in place", c.name, share)
+		}
 	}
 }
 

@@ -21,6 +21,11 @@ echo "== go test"
 go test -json ./sim/... ./render/scene ./render/raster >"$log/go.json"
 node site/test/gocount.mjs "$log/go.json" "$log/go.count" || true
 
+echo "== the same networks on arm64 (under an emulator) and in WebAssembly"
+bits=0
+(GOARCH=arm64 go test -c -o "$log/arm64" ./sim/growth && cd sim/growth && qemu-aarch64 "$log/arm64" -test.run DigestsArePinned) && bits=$((bits + 1)) || failed=$((failed + 1))
+(GOOS=js GOARCH=wasm go test -c -o "$log/wasm" ./sim/growth && cd sim/growth && "$(go env GOROOT)/lib/wasm/go_js_wasm_exec" "$log/wasm" -test.run DigestsArePinned) && bits=$((bits + 1)) || failed=$((failed + 1))
+
 echo "== page"
 (cd site && npx tsc --noEmit) || failed=$((failed + 1))
 rm -rf site/build/test && mkdir -p site/build/test
@@ -30,7 +35,7 @@ node --test --test-concurrency=1 --test-timeout=240000 --test-reporter=spec --te
 read -r gopass gofail <"$log/go.count"
 pass=$(awk '/^# pass/ {n = $3} END {print n + 0}' "$log/page.tap")
 fail=$(awk '/^# fail|^# cancelled/ {n += $3} END {print n + 0}' "$log/page.tap")
-total=$((gopass + pass))
+total=$((gopass + bits + pass))
 failed=$((failed + gofail + fail))
 [ "$gopass" -gt 0 ] && [ "$pass" -gt 0 ] || failed=$((failed + 1))
 echo "$total passed, $failed failed"
