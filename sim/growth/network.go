@@ -139,14 +139,32 @@ func (n *Network) Digest() string {
 // BetaMu returns beta times the chemical potential this very network shows at its size,
 //
 //	exp(-beta mu) = Z / (t m (1 - r)),   Z = sum eta_j T_j.
-func (n *Network) BetaMu(received []int32) float64 {
-	least := math.Inf(1)
+func (n *Network) BetaMu(received []int32) float64 { return n.Pulls().BetaMu(received) }
+
+// Pulls are the fitnesses of a network's members, for measuring it at many sizes.
+type Pulls struct {
+	n     *Network
+	least float64
+	eta   []float64 // relative to the fittest
+}
+
+// Pulls returns them.
+func (n *Network) Pulls() Pulls {
+	p := Pulls{n, math.Inf(1), make([]float64, len(n.Energy))}
 	for _, e := range n.Energy {
-		least = math.Min(least, e)
+		p.least = math.Min(p.least, e)
 	}
-	z := 0.0
+	for j, e := range n.Energy {
+		p.eta[j] = exact.Exp(-n.Sharpness * (e - p.least))
+	}
+	return p
+}
+
+// BetaMu is the network's BetaMu when its first members had received so many links.
+func (p Pulls) BetaMu(received []int32) float64 {
+	n, z := p.n, 0.0
 	for j, d := range received {
-		z += exact.Exp(-n.Sharpness*(n.Energy[j]-least)) * (n.Links + n.HeadStart + float64(d))
+		z += p.eta[j] * (n.Links + n.HeadStart + float64(d))
 	}
-	return n.Sharpness*least - math.Log(z/(float64(len(received))*n.Links*(1-n.OpenShare)))
+	return n.Sharpness*p.least - math.Log(z/(float64(len(received))*n.Links*(1-n.OpenShare)))
 }

@@ -254,6 +254,7 @@ type Grown struct {
 	Ranking     []Standing    `json:"ranking,omitempty"`
 	Reigns      []share.Reign `json:"reigns,omitempty"`
 	Path        *Path         `json:"path,omitempty"`
+	Tail        *Tail         `json:"tail,omitempty"`
 	Counted     []Counted     `json:"counted,omitempty"`
 }
 
@@ -281,7 +282,35 @@ type Path struct {
 	Share    []float64   `json:"share"`
 	Top4     []float64   `json:"top4"`
 	HHI      []float64   `json:"hhi"`
+	Gini     []float64   `json:"gini"`
+	BetaMu   []wire.Num  `json:"betaMu"` // null where the theory does not cover the rule
 	Followed [][]float64 `json:"followed"`
+}
+
+// columns returns the path as raw numbers, by the names they have in JSON.
+func (p Path) columns() []wire.Column {
+	short := func(name string, v []float64) wire.Column {
+		f := make([]float32, len(v))
+		for i, x := range v {
+			f[i] = float32(x)
+		}
+		return wire.Column{Name: "path." + name, Float32: f}
+	}
+	mu := make([]float64, len(p.BetaMu))
+	for i, v := range p.BetaMu {
+		mu[i] = float64(v)
+	}
+	out := []wire.Column{{Name: "path.members", Int32: p.Members}, {Name: "path.leader", Int32: p.Leader}, short("share", p.Share), short("top4", p.Top4), short("hhi", p.HHI), short("gini", p.Gini), short("betaMu", mu)}
+	for i, f := range p.Followed {
+		out = append(out, short("followed."+strconv.Itoa(i), f))
+	}
+	return out
+}
+
+// Tail is the share of members that hold at least so many links.
+type Tail struct {
+	Links []int32   `json:"links"`
+	Share []float64 `json:"share"`
 }
 
 // Counted is the occupation counted among members of like energy, with its standard error.
@@ -292,7 +321,7 @@ type Counted struct {
 	Members int     `json:"members"`
 }
 
-const pathPoints, followed = 120, 5
+const pathPoints, tailPoints, followed = 200, 60, 5
 
 // grow answers with the network of an entry; its columns go to the stage.
 func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
@@ -306,17 +335,26 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 	}
 	received := n.Received(n.Members)
 	s := share.Of(received)
-	betaMu := n.BetaMu(received)
 	g := c.Entries[ask.Entry].Growth
 	covered := g.Kernel == 1 && len(outside(g)) == 0
-	if !covered {
-		betaMu = math.NaN() // what it stands for is not the pull newcomers feel
+	betaMu := math.NaN() // outside the theory it would not be the pull newcomers feel
+	if covered {
+		betaMu = n.BetaMu(received)
 	}
 	name := namer(c, n.From())
 	e.network, e.received, e.name = n, received, name
 	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
 		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], math.Exp(-n.Sharpness * n.Energy[s.Leader]), s.Leader}}
-	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))])
+	full := Path{}
+	z := n.Pulls()
+	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))], func(received []int32) {
+		full.Gini = append(full.Gini, share.Gini(received))
+		mu := math.NaN()
+		if covered {
+			mu = z.BetaMu(received)
+		}
+		full.BetaMu = append(full.BetaMu, wire.Num(mu))
+	})
 	out.LeadChanges = path.LeadChanges()
 	if ask.Digest {
 		out.Digest = n.Digest()
@@ -327,12 +365,16 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 			out.Ranking = append(out.Ranking, Standing{name(int(j)), j, float64(received[j]) / float64(s.Links), n.Energy[j]})
 		}
 		out.Reigns = path.Reigns
-		out.Path = &Path{path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Followed}
+		full.Members, full.Leader, full.Share, full.Top4, full.HHI, full.Followed = path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Followed
+		out.Path = &full
+		t := share.TailOf(received, tailPoints)
+		out.Tail = &Tail{t.Links, t.Share}
 		out.Counted = []Counted{}
 		if covered {
 			out.Counted = counted(n, received)
 		}
-		r.columns = columns(n)
+		r.columns = append(columns(n), full.columns()...)
+		out.Path = &Path{}
 	}
 	r.body = out
 	return r, nil

@@ -1,6 +1,9 @@
 package share
 
-import "math"
+import (
+	"math"
+	"sort"
+)
 
 // held is the share of growth for which a new leader must last before the change counts.
 const held = 1.05
@@ -26,8 +29,9 @@ type Reign struct {
 func (p Path) LeadChanges() int { return max(0, len(p.Reigns)-1) }
 
 // Along follows the targets, in order, of a network of the given members; before(v) is the number of links made before
-// member v came. It starts at size from. follow names members whose own shares are wanted.
-func Along(targets []int32, before func(v int) int, from, members, points int, follow []int32) Path {
+// member v came. It starts at size from. follow names members whose own shares are wanted. each, if not nil, is called at
+// every size noted with the links each member has received by then.
+func Along(targets []int32, before func(v int) int, from, members, points int, follow []int32, each func(received []int32)) Path {
 	var p Path
 	t := tally{received: make([]int32, members)}
 	for _, j := range targets[:before(from)] {
@@ -46,6 +50,9 @@ func Along(targets []int32, before func(v int) int, from, members, points int, f
 		}
 		for next < len(sizes) && int(sizes[next]) == v {
 			p.note(&t, v, follow)
+			if each != nil && t.links > 0 {
+				each(t.received[:v])
+			}
 			next++
 		}
 	}
@@ -137,4 +144,36 @@ func (t *tally) add(j int32) {
 		t.top[at], t.top[at-1] = t.top[at-1], t.top[at]
 		at--
 	}
+}
+
+// A Tail is how many members hold at least so many links: Share of them hold Links or more.
+type Tail struct {
+	Links []int32
+	Share []float64
+}
+
+// TailOf returns the tail at up to points values evenly spaced in the logarithm, from 1 link to the most that any holds.
+func TailOf(received []int32, points int) Tail {
+	var t Tail
+	most := int32(0)
+	for _, d := range received {
+		most = max(most, d)
+	}
+	if most == 0 {
+		return t
+	}
+	t.Links = Sizes(1, int(most), points)
+	count := make([]int, len(t.Links))
+	for _, d := range received {
+		if k := sort.Search(len(t.Links), func(i int) bool { return t.Links[i] > d }); k > 0 {
+			count[k-1]++
+		}
+	}
+	t.Share = make([]float64, len(count))
+	sum := 0
+	for k := len(count) - 1; k >= 0; k-- {
+		sum += count[k]
+		t.Share[k] = float64(sum) / float64(len(received))
+	}
+	return t
 }

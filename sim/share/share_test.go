@@ -31,7 +31,8 @@ func TestAlongAgainstRecount(t *testing.T) {
 		targets[i] = int32(float64(v) * math.Pow(r.Float64(), 3))
 	}
 	before := func(v int) int { return 2 * max(v-1, 0) }
-	p := Along(targets, before, 1, 301, 60, []int32{0})
+	var seen []float64
+	p := Along(targets, before, 1, 301, 60, []int32{0}, func(received []int32) { seen = append(seen, Gini(received)) })
 	for i, v := range p.Members {
 		d := make([]int32, v)
 		for _, j := range targets[:before(int(v))] {
@@ -56,5 +57,39 @@ func TestLastingReigns(t *testing.T) {
 		if got[i] != want[i] {
 			t.Errorf("got %v, want %v", got, want)
 		}
+	}
+}
+
+func TestEachAndTail(t *testing.T) {
+	targets := []int32{0, 0, 0, 1, 0, 2, 1, 0}
+	before := func(v int) int { return max(0, v-1) }
+	var sums []int
+	p := Along(targets, before, 1, 9, 9, nil, func(received []int32) {
+		sum := 0
+		for _, d := range received {
+			sum += int(d)
+		}
+		sums = append(sums, sum)
+		if got, want := Gini(received), Of(received).Gini; got != want {
+			t.Errorf("Gini %g, %g", got, want)
+		}
+	})
+	for i, n := range p.Members { // n members have made n-1 links
+		if sums[i] != int(n)-1 {
+			t.Errorf("%d links at %d members", sums[i], n)
+		}
+	}
+	if len(sums) != len(p.Members) || len(sums) < 5 {
+		t.Errorf("%d sizes, %d notes", len(p.Members), len(sums))
+	}
+	tail := TailOf([]int32{5, 2, 1, 0, 0}, 10)
+	want := map[int32]float64{1: .6, 2: .4, 3: .2, 4: .2, 5: .2}
+	for i, k := range tail.Links {
+		if tail.Share[i] != want[k] {
+			t.Errorf("%g of the members hold %d links or more, want %g", tail.Share[i], k, want[k])
+		}
+	}
+	if len(tail.Links) != 5 || len(TailOf([]int32{0, 0}, 10).Links) != 0 {
+		t.Errorf("tail %v", tail)
 	}
 }

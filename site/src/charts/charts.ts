@@ -194,6 +194,37 @@ export function shares(g: Grown, width: number): Element {
   return p.axes();
 }
 
+/** How many members hold at least so many links, both axes in powers of ten. */
+export function degrees(g: Grown, width: number): Element | undefined {
+  const p0 = points(g.tail.links, g.tail.share);
+  const most = p0.at(-1)?.x ?? 1, least = Math.min(0.1, p0.at(-1)?.y ?? 0.1);
+  if (p0.length < 2) return undefined;
+  const low = 10 ** Math.floor(Math.log10(least));
+  const p = new Plane({ ...small, height: 150, margin: { ...small.margin, left: 48 }, width, x: { domain: [1, Math.max(10, most)], log: true, ticks: decades(1, Math.max(10, most)), format: count }, y: { domain: [low, 1], log: true, ticks: [1, Math.sqrt(low) > 0 ? 10 ** Math.round(Math.log10(low) / 2) : low, low], format: percent } });
+  p.grid(line);
+  for (const q of p0) p.dot(q, 2.6, { stroke: blue, width: 1.4, fill: css("sheet") });
+  const leader = p0.at(-1);
+  if (leader) p.dot(leader, 4, { fill: ember }).text(leader, g.leader.id, { dx: -8, dy: -2, anchor: "end", fill: emberText, weight: 600 });
+  return p.axes();
+}
+
+/** beta mu as it was counted at every size, on its way to that of endless growth. */
+export function potentialOverSize(g: Grown, limit: number | null, width: number): Element | undefined {
+  const path = points(g.path.members, g.path.betaMu).filter((q) => q.x >= 10);
+  if (path.length < 2) return undefined;
+  const end = path.at(-1)?.x ?? 10, start = Math.min(10, path[0]?.x ?? 10);
+  const ys = [...path.map((q) => q.y), ...(finite(limit) ? [limit] : [])];
+  const low = Math.min(0, ...ys), high = Math.max(0.05, ...ys), room = 0.08 * (high - low);
+  const p = new Plane({ ...small, height: 150, margin: { ...small.margin, left: 40 }, width, x: { domain: [start, Math.max(end, start + 1)], log: true, ticks: decades(start, end), format: count }, y: { domain: [low - room, high + room], ticks: 3 } });
+  p.grid(line);
+  if (finite(limit)) {
+    p.across(limit, { stroke: ink, dash: "4 3" });
+    p.text({ x: end, y: limit }, "endless growth", { anchor: "end", dy: limit > (low + high) / 2 ? 9 : -8, fill: quiet });
+  }
+  p.line(path, { stroke: blue, width: 1.6 });
+  return p.axes();
+}
+
 /** How the shares of an imported log went. */
 export function track(t: { members: number[]; share: number[]; top4: number[] }, width: number): Element {
   const leader = t.members.map((x, i) => ({ x, y: t.share[i]! }));

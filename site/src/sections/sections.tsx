@@ -2,7 +2,7 @@
 import { signal } from "@preact/signals";
 import type { JSX } from "preact";
 import { useEffect, useState } from "preact/hooks";
-import { exponent, fan, gauge, occupation, potential, shares } from "../charts/charts";
+import { degrees, exponent, fan, gauge, occupation, potential, potentialOverSize, shares } from "../charts/charts";
 import { download, Figure } from "../charts/figure";
 import { Check, Progress, Slider } from "../controls/controls";
 import { doc, editEntry, tables } from "../state/document";
@@ -116,9 +116,20 @@ export function SharesSection(): JSX.Element {
           {g.path.members.length > 3 && <Figure
             title="Share of all links" name="shares" class="plain" every={quick.value ? 200 : 0} summary={`${g.leader.id} leads with ${percent(g.leader.share)} at ${count(g.members)} members; ${g.leadChanges} lead changes that lasted.`}
             of={[g]} draw={(w) => shares(g, w)}
-            table={() => ({ columns: ["members", "leader's share", "top four", "HHI", ...g.ranking.slice(0, g.path.followed.length).map((r) => r.id)], rows: g.path.members.map((n, i) => [n, g.path.share[i] ?? 0, g.path.top4[i] ?? 0, g.path.hhi[i] ?? 0, ...g.path.followed.map((f) => f[i] ?? 0)]) })}
+            table={() => ({ columns: ["members", "leader's share", "top four", "HHI", "Gini", ...g.ranking.slice(0, g.path.followed.length).map((r) => r.id)], rows: g.path.members.map((n, i) => [n, g.path.share[i] ?? 0, g.path.top4[i] ?? 0, g.path.hhi[i] ?? 0, g.path.gini[i] ?? 0, ...g.path.followed.map((f) => f[i] ?? 0)]) })}
             note="Dashed: whoever leads. Marks at the top: the lead changed for good (for 5 % of growth at least)."
           />}
+          <div class="duo">
+            <Figure
+              title="Members by links held" name="degrees" every={quick.value ? 200 : 0} summary={`How links received are spread at ${count(g.members)} members; the most are ${count(g.tail.links.at(-1) ?? 0)}, held by ${g.leader.id}.`}
+              of={[g]} draw={(w) => degrees(g, w)} table={() => ({ columns: ["links", "share of members with so many or more"], rows: g.tail.links.map((k, i) => [k, g.tail.share[i] ?? 0]) })}
+            />
+            <Figure
+              title="Potential βμ over size" name="potential-over-size" every={quick.value ? 200 : 0}
+              summary={g.betaMuAtSize === null ? "Not counted: the theory does not cover this rule." : `Counted in this network as it grew: ${number(g.betaMuAtSize)} at ${count(g.members)} members; ${number(standing()?.betaMu, "none")} in endless growth.`}
+              of={[g, standing()?.betaMu]} draw={(w) => potentialOverSize(g, standing()?.betaMu ?? null, w)} table={() => ({ columns: ["members", "beta mu"], rows: g.path.members.map((n, i) => [n, g.path.betaMu[i] ?? ""]) })}
+            />
+          </div>
           <dl class="pairs">
             <div><dt>Top four together (CR4)</dt><dd>{percent(g.top4)}</dd></div>
             <div><dt>HHI</dt><dd>{number(g.hhi)} <small>points of 10,000</small></dd></div>

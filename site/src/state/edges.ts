@@ -109,12 +109,25 @@ export function cancelGrowth(): void {
   growth?.abort();
 }
 
+/** Puts shares over size, which come as raw numbers, where they have their names. */
+function withPath(r: Reply<Grown>): Grown {
+  const path: Record<string, unknown> = {}, followed: number[][] = [];
+  for (const c of r.columns) {
+    const [part, name = "", index] = c.name.split(".");
+    if (part !== "path") continue;
+    const list = Array.from(c.data, (v) => (Number.isFinite(v) ? v : null));
+    if (index === undefined) path[name] = list;
+    else followed[Number(index)] = list as number[];
+  }
+  return { ...r.body, path: { ...path, followed } as unknown as Grown["path"] };
+}
+
 function takeGrown(r: Reply<Grown>, key: string, before: Grown | undefined): void {
   batch(() => {
     takeEarly();
     // A scrubber that stood at the end stays at the end.
     const atEnd = !before || shown.peek() >= before.members;
-    grown.value = { key, value: r.body };
+    grown.value = { key, value: withPath(r) };
     if (atEnd || shown.peek() > r.body.members || shown.peek() < r.body.from) shown.value = r.body.members;
     if (follow.peek() >= r.body.members) follow.value = -1;
     network.value = r.bytes;
