@@ -5,10 +5,10 @@ import (
 	"encoding/json"
 	"math"
 	"math/rand/v2"
-	"os"
 	"os/exec"
 	"testing"
 
+	"preponder/sim/internal/near"
 	"preponder/sim/law"
 )
 
@@ -115,19 +115,7 @@ func randomCase(r *rand.Rand, k int) (law.Law, referenceCase, Rule) {
 
 // The source is mpmath (Debian's python3-mpmath), evaluated when the test runs.
 func TestAgainstMpmath(t *testing.T) {
-	python := ""
-	for _, p := range []string{"python3", "/usr/bin/python3"} {
-		if exec.Command(p, "-c", "import mpmath").Run() == nil {
-			python = p
-			break
-		}
-	}
-	if python == "" {
-		if os.Getenv("PREPONDER_REFERENCES") != "" {
-			t.Fatal("python3-mpmath is missing")
-		}
-		t.Skip("python3-mpmath is not installed; ./build.sh test installs it")
-	}
+	python := near.Python(t, "mpmath")
 	cases := 1000
 	if testing.Short() {
 		cases = 70

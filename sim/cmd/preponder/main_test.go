@@ -9,6 +9,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"preponder/sim/internal/near"
 )
 
 func answer(t *testing.T, in string, args ...string) (string, error) {
@@ -58,19 +60,7 @@ func TestWalkThrough(t *testing.T) {
 
 // What the command writes is read by networkx and igraph (Debian's python3-networkx and python3-igraph), and agrees.
 func TestExportsAreRead(t *testing.T) {
-	python := ""
-	for _, p := range []string{"python3", "/usr/bin/python3"} {
-		if exec.Command(p, "-c", "import networkx, igraph").Run() == nil {
-			python = p
-			break
-		}
-	}
-	if python == "" {
-		if os.Getenv("PREPONDER_REFERENCES") != "" {
-			t.Fatal("python3-networkx or python3-igraph is missing")
-		}
-		t.Skip("python3-networkx and python3-igraph are not installed; ./build.sh test installs them")
-	}
+	python := near.Python(t, "networkx, igraph")
 	dir := t.TempDir()
 	file := func(name string) string { return filepath.Join(dir, name) }
 	_, err := answer(t, `{"casebook":1,"entries":[{"sharpness":2,"growth":{"members":3000,"links":3}}]}`, "grow", "-", "--graphml", file("a.graphml"), "--log", file("a.csv"), "--degrees", file("d.csv"))

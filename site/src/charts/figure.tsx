@@ -1,5 +1,5 @@
 // A chart with its title, its summary in words and its table.
-import type { JSX } from "preact";
+import type { JSX, RefObject } from "preact";
 import { useLayoutEffect, useRef, useState } from "preact/hooks";
 import { planeOf } from "./plane";
 
@@ -61,6 +61,21 @@ async function png(f: { text: string; width: number; height: number }): Promise<
   return new Promise((resolve, reject) => canvas.toBlob((b) => (b ? resolve(b) : reject(new Error("no picture"))), "image/png"));
 }
 
+/** A box and how wide it is, in whole pixels; 0 before it stands. */
+export function useWidth(): [RefObject<HTMLDivElement | null>, number] {
+  const ref = useRef<HTMLDivElement>(null);
+  const [width, setWidth] = useState(0);
+  useLayoutEffect(() => {
+    const el = ref.current;
+    if (!el) return;
+    const watch = new ResizeObserver(() => setWidth(Math.floor(el.clientWidth)));
+    watch.observe(el);
+    setWidth(Math.floor(el.clientWidth));
+    return () => watch.disconnect();
+  }, []);
+  return [ref, width];
+}
+
 /** Handlers for a chart on which something is set: press, drag, let go. */
 function pointing(on: NonNullable<FigureProps["onPoint"]>): Record<string, (e: PointerEvent) => void> {
   const at = (e: PointerEvent): number | undefined => {
@@ -77,20 +92,16 @@ function pointing(on: NonNullable<FigureProps["onPoint"]>): Record<string, (e: P
 }
 
 export function Figure(p: FigureProps): JSX.Element {
-  const ref = useRef<HTMLDivElement>(null);
-  const [width, setWidth] = useState(0);
+  const [ref, width] = useWidth();
   const [open, setOpen] = useState(false);
   const last = useRef(-Infinity);
   const [near, setNear] = useState(false); // only what is on the screen, or nearly, is drawn
   useLayoutEffect(() => {
     const el = ref.current;
     if (!el) return;
-    const watch = new ResizeObserver(() => setWidth(Math.floor(el.clientWidth)));
-    watch.observe(el);
-    setWidth(Math.floor(el.clientWidth));
     const sight = new IntersectionObserver((seen) => setNear(seen.some((s) => s.isIntersecting)), { rootMargin: "200px" });
     sight.observe(el);
-    return () => { watch.disconnect(); sight.disconnect(); };
+    return () => sight.disconnect();
   }, []);
   useLayoutEffect(() => {
     const el = ref.current;

@@ -1,6 +1,7 @@
 // A drawn law: knots moved, added and taken away on its chart, by pointer and by keys, or typed as numbers.
 import type { JSX } from "preact";
-import { useLayoutEffect, useRef, useState } from "preact/hooks";
+import { useLayoutEffect, useState } from "preact/hooks";
+import { useWidth } from "../charts/figure";
 import { drawn, type Frame, type LeaderMark } from "../charts/charts";
 import { NumberCell } from "../controls/controls";
 import type { Curves } from "../state/types";
@@ -29,22 +30,13 @@ function frameOf(knots: readonly Knot[]): Frame {
 }
 
 export function Knots(p: KnotsProps): JSX.Element {
-  const chart = useRef<HTMLDivElement>(null);
-  const [width, setWidth] = useState(0);
+  const [chart, width] = useWidth();
   const [held, setHeld] = useState<{ index: number; frame: Frame } | undefined>(undefined);
   // Knots are shown from the first on: energies count from there.
   const origin = p.knots[0]?.[0] ?? 0;
   const knots: Knot[] = p.knots.map(([e, d]) => [e - origin, d]);
   const frame = held?.frame ?? frameOf(knots);
   const plane = width > 0 ? drawn(knots, p.curves, p.leader, frame, width) : undefined;
-  useLayoutEffect(() => {
-    const el = chart.current;
-    if (!el) return;
-    const watch = new ResizeObserver(() => setWidth(Math.floor(el.clientWidth)));
-    watch.observe(el);
-    setWidth(Math.floor(el.clientWidth));
-    return () => watch.disconnect();
-  }, []);
   useLayoutEffect(() => {
     if (!plane) return;
     plane.svg.setAttribute("aria-hidden", "true");
