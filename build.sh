@@ -48,7 +48,7 @@ case "${1:-build}" in
     ;;
   bench)
     shift
-    need "command -v chromium" chromium "python3 -c 'import scipy' || /usr/bin/python3 -c 'import scipy'" python3-scipy
+    need "command -v chromium" chromium "python3 -c 'import scipy' || /usr/bin/python3 -c 'import scipy'" python3-scipy "python3 -c 'import igraph' || /usr/bin/python3 -c 'import igraph'" python3-igraph "command -v cc" gcc
     build && exec node site/bench.mjs "$@"
     ;;
   *) say "use: ./build.sh [build|run|test|bench]"; exit 2 ;;

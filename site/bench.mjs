@@ -33,9 +33,23 @@ for (const [, name, ns] of solve.matchAll(/SolveWithCurves\/(\S+?)-?\d*\s+\d+\s+
   console.log(`  ${name.padEnd(12)} ${ms.toFixed(2)}${other ? `, scipy ${other.toFixed(0)}, ratio ${(other / ms).toFixed(0)}` : ""}`);
 }
 
+console.log("growth of a condensate, fitness on, one core, million links a second; beside it plain attachment without fitness by igraph and by a few lines of C");
 const native = {};
-const out = execFileSync("go", ["test", "./sim/growth", "-run", "xx", "-bench", "Grow/condensate", "-benchtime", "20x"], { cwd: root, encoding: "utf8" });
-for (const [, size, rate] of out.matchAll(/condensate\/(\d+)-?\d*\s+\d+\s+[\d.]+ ns\/op\s+([\d.]+) Mlinks/g)) native[Number(size)] = Number(rate);
+{
+  const sizes = ["100000", "1000000", "10000000"];
+  const run = (command, ...args) => { const r = spawnSync(command, args, { cwd: root, encoding: "utf8" }); return r.status === 0 ? r.stdout.trim().split("\n").map(Number) : []; };
+  const c = (() => { const built = spawnSync("cc", ["-O2", "-o", here("build/plain").pathname, "sim/growth/testdata/plain.c"], { cwd: root }); return built.status === 0 ? run(here("build/plain").pathname, ...sizes) : []; })();
+  const bag = ["python3", "/usr/bin/python3"].map((p) => run(p, "sim/growth/testdata/bag.py", ...sizes)).find((r) => r.length > 0) ?? [];
+  const out = execFileSync("go", ["test", "./sim/growth", "-run", "xx", "-bench", "Grow/condensate", "-benchtime", "3x"], { cwd: root, encoding: "utf8" });
+  for (const [, size, rate] of out.matchAll(/condensate\/(\d+)-?\d*\s+\d+\s+[\d.]+ ns\/op\s+([\d.]+) Mlinks/g)) native[Number(size)] = Number(rate);
+  sizes.forEach((size, i) => {
+    const of = (seconds) => (seconds ? (2 * Number(size)) / seconds / 1e6 : NaN);
+    const rate = native[Number(size)] ?? NaN;
+    console.log(`  ${size.padStart(8)} members: ${rate.toFixed(1)}, igraph ${of(bag[i]).toFixed(1)} (ratio ${(rate / of(bag[i])).toFixed(2)}), C ${of(c[i]).toFixed(0)} (ratio ${(rate / of(c[i])).toFixed(2)})`);
+  });
+}
+console.log("the same under each lever, at 100,000 members");
+for (const [, name, rate] of execFileSync("go", ["test", "./sim/growth", "-run", "xx", "-bench", "Levers", "-benchtime", "5x"], { cwd: root, encoding: "utf8" }).matchAll(/Levers\/(\S+?)-?\d*\s+\d+\s+[\d.]+ ns\/op\s+([\d.]+) Mlinks/g)) console.log(`  ${name.replaceAll("_", " ").padEnd(12)} ${rate}`);
 
 const wire = (await build({ entryPoints: [here("src/engine/wire.ts").pathname], bundle: true, format: "iife", globalName: "benchWire", write: false })).outputFiles[0].text;
 const browser = await chromium.launch({ executablePath: "/usr/bin/chromium", args: flags });

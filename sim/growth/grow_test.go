@@ -487,7 +487,7 @@ func BenchmarkGrow(b *testing.B) {
 		name  string
 		sharp float64
 	}{{"level", 0}, {"fit-get-rich", 1}, {"condensate", 3}} {
-		for _, size := range []int{1e3, 1e5, 1e6} {
+		for _, size := range []int{1e3, 1e5, 1e6, 1e7} {
 			b.Run(fmt.Sprintf("%s/%d", c.name, size), func(b *testing.B) {
 				for b.Loop() {
 					grow(b, Params{Law: law.Power{Theta: 1}, Sharpness: c.sharp, Links: 2, Members: size, Seed: 1})

@@ -35,9 +35,15 @@ export interface Session {
 
 let browser: Browser | undefined;
 
+/** Starts a browser; one that dies while it starts is started once more. */
+async function launch(more: string[]): Promise<Browser> {
+  const look = { executablePath: "/usr/bin/chromium", args: [...flags, ...more] };
+  return chromium.launch(look).catch(() => chromium.launch(look));
+}
+
 async function launched(more: string[]): Promise<Browser> {
-  if (more.length > 0) return chromium.launch({ executablePath: "/usr/bin/chromium", args: [...flags, ...more] });
-  browser ??= await chromium.launch({ executablePath: "/usr/bin/chromium", args: flags });
+  if (more.length > 0) return launch(more);
+  browser ??= await launch([]);
   return browser;
 }
 

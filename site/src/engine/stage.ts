@@ -164,6 +164,7 @@ export class Stage {
   }
 
   private lost(): void {
+    this.window = undefined; // what has ended takes no calls
     if (this.refused) this.events.lost("This browser draws no WebGL, so the picture stands still; all figures and controls work.");
     else if (this.rebuilds++ < 5) this.rebuild();
     else this.events.lost("The picture stopped working. Everything else goes on.");
