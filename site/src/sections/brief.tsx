@@ -4,9 +4,9 @@ import type { JSX } from "preact";
 import { fan, shares, track } from "../charts/charts";
 import { useLayoutEffect, useRef } from "preact/hooks";
 import { current, doc, tables } from "../state/document";
-import { grown, solved } from "../state/results";
+import { grown, reached, solved } from "../state/results";
 import { addressWith, fromFile } from "../state/storage";
-import type { Entry } from "../state/types";
+import type { Entry, Law } from "../state/types";
 import { count, number, percent, range } from "../words/format";
 import { evidenceWords, Origin } from "./evidence";
 import { Section } from "./section";
@@ -38,15 +38,29 @@ function Drawn(p: { draw: (width: number) => Element | undefined; of: unknown })
   return <div ref={ref} aria-hidden="true" />;
 }
 
+/** A law in words; long lists are cut, since the code below holds them whole. */
+function lawWords(law: Law): string {
+  const list = (pairs: [number, number][]): string => `${pairs.slice(0, 12).map(([a, b]) => `(${number(a)}, ${number(b)})`).join(", ")}${pairs.length > 12 ? " and more" : ""}`;
+  switch (law.family) {
+    case "evidence": return "estimated from the log";
+    case "drawn": return `drawn, straight between the knots (energy, density) ${list(law.knots ?? [])}`;
+    case "tiers": return `levels (energy, weight) ${list((law.tiers ?? []).map((t) => [t.energy, t.weight]))}`;
+    case "formula": return `in proportion to ${law.density ?? ""} on energies e from 0 to ${number(Number(law["top"] ?? 1))}`;
+    default: return `${law.family}${Object.entries(law).filter(([k, v]) => k !== "family" && typeof v === "number").map(([k, v]) => ` ${k} ${String(v)}`).join(",")}`;
+  }
+}
+
 function assumptions(e: Entry): string[] {
   const g = e.growth;
+  const { kernel, fading, idling, expiry, levy } = g;
+  const slower = [fading > 0 && `falls as a member's age to the power ${number(fading)}`, idling > 0 && `falls as the arrivals since it was last active to the power ${number(idling)}`].filter(Boolean);
   const rules = [
     g.headStart > 0 && `a head start of ${number(g.headStart)} tickets`, g.openShare > 0 && `${percent(g.openShare)} of links dealt to any member alike`, g.ceiling > 0 && `a ceiling of ${percent(g.ceiling)}`, g.distinct && "distinct partners",
+    levy.rate > 0 && `a levy: links above ${percent(levy.above)} of all count ${percent(levy.rate)} less`, expiry > 0 && `links older than ${count(expiry)} arrivals count no more`,
   ].filter(Boolean);
-  const law = `${e.law.family}${Object.entries(e.law).filter(([k, v]) => k !== "family" && typeof v === "number").map(([k, v]) => ` ${k} ${String(v)}`).join(",")}`;
   return [
-    `Newcomers choose by fitness times tickets (links they bring plus links received), ${number(g.links)} links each; nothing else counts.`,
-    `Law of energies: ${law === "evidence" ? "estimated from the log" : law}; sharpness ${number(e.sharpness)}; seed ${g.seed}.`,
+    `Newcomers choose by fitness times tickets${kernel === 1 ? "" : ` to the power ${number(kernel)}`} (links they bring plus links received), ${number(g.links)} links each; ${slower.length > 0 ? `the pull ${slower.join(" and ")}` : "nothing else counts"}.`,
+    `Law of energies: ${lawWords(e.law)}; sharpness ${number(e.sharpness)}; seed ${g.seed}.`,
     rules.length > 0 ? `Rules: ${rules.join(", ")}${g.leversFrom > 0 ? `, from ${count(g.leversFrom)} members on` : ""}.` : "No rule limits the choice.",
     "Shares are links received over all links. Endless growth is a limit: at any size one member may hold much of what the fittest hold together, and which one differs from run to run.",
   ];
@@ -62,6 +76,8 @@ export function PrintedBrief(): JSX.Element | null {
   const e = c.entry;
   const { outlook: o } = outlookOf(e);
   const ev = d.book.evidence;
+  const atSize = s.verdict.atSize || (reached.value?.key === solved.value?.key ? reached.value?.value : "");
+  const without = ["unknown", "gelation", "sublinear"].includes(s.regime) ? " without these levers" : "";
   const w = evidenceWords.value;
   return (
     <section class="paper" aria-label="Brief for print">
@@ -75,14 +91,15 @@ export function PrintedBrief(): JSX.Element | null {
         <div>
           <h2>{s.verdict.heading}</h2>
           <p>{s.verdict.line} {s.verdict.reason}</p>
+          {atSize && <p>{atSize}</p>}
           <table>
             <tbody>
               <tr><th scope="row">Leader at {count(g.members)} members</th><td>{g.leader.id}, {percent(g.leader.share)} of links</td></tr>
               <tr><th scope="row">Top four; HHI</th><td>{percent(g.top4)}; {number(g.hhi)}</td></tr>
               <tr><th scope="row">Lead changes so far</th><td>{g.leadChanges}</td></tr>
-              <tr><th scope="row">Margin (condensate below 1)</th><td>{number(s.margin)}</td></tr>
-              <tr><th scope="row">Condensate, endless growth</th><td>{s.condensate > 0 ? `${percent(s.condensate)} of links, on the fittest few together` : "none"}</td></tr>
-              {s.dissolve.headStart !== null && <tr><th scope="row">Dissolved by, alone</th><td>head start {number(s.dissolve.headStart)} or open share {percent(s.dissolve.openShare ?? 0)}</td></tr>}
+              <tr><th scope="row">Margin{without} (condensate below 1)</th><td>{number(s.margin)}</td></tr>
+              <tr><th scope="row">Condensate{without}, endless growth</th><td>{s.condensate > 0 ? `${percent(s.condensate)} of links, on the fittest few together` : "none"}</td></tr>
+              {s.dissolve.headStart !== null && <tr><th scope="row">Dissolved{without} by, alone</th><td>head start {number(s.dissolve.headStart)} or open share {percent(s.dissolve.openShare ?? 0)}</td></tr>}
             </tbody>
           </table>
         </div>

@@ -16,6 +16,11 @@ export interface Growth {
   openShare: number;
   distinct: boolean;
   ceiling: number;
+  kernel: number;
+  levy: { above: number; rate: number };
+  fading: number;
+  idling: number;
+  expiry: number;
   leversFrom: number;
   [field: string]: unknown;
 }
