@@ -23,9 +23,9 @@ type panel struct {
 }
 
 const (
-	maxPanels  = 1200
+	maxPanels  = 700
 	resolved   = 1e-13 // of the last coefficients against the largest
-	negligible = 1e-14 // of a panel's doubt against all mass
+	negligible = 3e-13 // of a panel's doubt against all mass
 	thinnest   = 1e-15 // panels are not cut below this width: a jump lies there
 )
 
