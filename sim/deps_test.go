@@ -12,11 +12,10 @@ import (
 // own; a line that nothing uses fails too. "engine" marks what may bring in Ebiten, "browser" what may use syscall/js.
 const allowed = `
 sim/internal/exact      <-
-sim/internal/root       <-
 sim/internal/near       <-
 sim/internal/gauss      <-
 sim/law                 <- sim/internal/exact sim/internal/gauss
-sim/bose                <- sim/internal/gauss sim/internal/root sim/law
+sim/bose                <- sim/internal/gauss sim/law
 sim/growth              <- sim/internal/exact sim/law
 sim/share               <-
 sim/standing            <- sim/bose

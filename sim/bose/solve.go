@@ -1,10 +1,10 @@
 package bose
 
 import (
+	"errors"
 	"fmt"
 	"math"
 
-	"preponder/sim/internal/root"
 	"preponder/sim/law"
 )
 
@@ -169,6 +169,9 @@ func (s *Spectrum) Mu(beta, r float64) (float64, error) {
 	return s.heat(beta).potential(r, math.Log(math.Log1p(1/r)/beta)-1, exactMu)
 }
 
+// errNoConvergence comes with the best mu so far.
+var errNoConvergence = errors.New("it was still moving after 200 steps")
+
 // potential searches for mu from ln(-mu) = start until a step is smaller than tol.
 func (h *heated) potential(r, start, tol float64) (float64, error) {
 	least := math.Log(muLeast)
@@ -211,7 +214,7 @@ func (h *heated) potential(r, start, tol float64) (float64, error) {
 		}
 		y = next
 	}
-	return -math.Exp(y), root.ErrNoConvergence
+	return -math.Exp(y), errNoConvergence
 }
 
 // Critical returns the sharpness at which a condensate begins, I(beta, 0) = r, or NaN where the law allows none up to 1e6.

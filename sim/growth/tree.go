@@ -57,19 +57,24 @@ func (t *sumTree) fill(n int, weight func(j int) float64) {
 func (t *sumTree) find(x float64) int {
 	i := 0
 	for k := len(t.level) - 2; k >= 0; k-- {
-		c := t.level[k][i*fan : i*fan+fan : i*fan+fan]
-		i *= fan
-		last := 0 // the last child with any weight takes what rounding leaves over
-		for s, w := range c {
-			if w > 0 {
-				last = s
-				if x < w {
-					break
-				}
-				x -= w
-			}
-		}
-		i += last
+		var s int
+		s, x = among(t.level[k][i*fan:i*fan+fan], x)
+		i = i*fan + s
 	}
 	return i
+}
+
+// among returns which of the weights x falls on, on the line of them all, and how far into it. The last with any weight
+// takes what rounding leaves over.
+func among(c []float64, x float64) (child int, rest float64) {
+	for s, w := range c {
+		if w > 0 {
+			child = s
+			if x < w {
+				return s, x
+			}
+			x -= w
+		}
+	}
+	return child, x
 }

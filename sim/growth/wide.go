@@ -91,18 +91,9 @@ func (t *wideTree) find(u float64) int {
 	i := 0
 	for k := len(t.level) - 2; k >= 0; k-- {
 		c, sum, _ := parts(t.level[k], i)
-		x, last := float64(u*sum), 0
-		for s, w := range c {
-			if w > 0 {
-				last = s
-				if x < w {
-					break
-				}
-				x -= w
-			}
-		}
-		u = math.Max(0, math.Min(x/c[last], 1))
-		i = i*fan + last
+		s, rest := among(c[:], float64(u*sum))
+		u = math.Max(0, math.Min(rest/c[s], 1))
+		i = i*fan + s
 	}
 	return i
 }

@@ -237,4 +237,3 @@ func (p Formula) Mean() float64 {
 func (p Formula) Edge() Edge                       { return p.panels.edge }
 func (p Formula) Knots() []float64                 { return p.breaks }
 func (p Formula) EdgeUncertainty() (theta float64) { return p.unsure }
-func (p Formula) String() string                   { return p.text }
