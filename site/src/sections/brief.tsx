@@ -91,7 +91,7 @@ export function PrintedBrief(): JSX.Element | null {
         <div>
           <h2>{s.verdict.heading}</h2>
           <p>{s.verdict.line} {s.verdict.reason}</p>
-          {atSize && <p>{atSize}</p>}
+          {!o && atSize && <p>{atSize}</p> /* an outlook says more, and one page is one page */}
           <table>
             <tbody>
               <tr><th scope="row">Leader at {count(g.members)} members</th><td>{g.leader.id}, {percent(g.leader.share)} of links</td></tr>
