@@ -57,6 +57,7 @@ const page = await (await browser.newContext({ viewport: { width: 1440, height: 
 await page.addInitScript({ content: `${wire}\nwindow.benchWire = benchWire;` });
 await page.goto(here("dist/preponder.html").href);
 await page.locator(".plate").waitFor();
+await page.waitForTimeout(6000); // the stage starts, marks are made
 
 console.log("growth in a condensate (power law, sharpness 3, 2 links), million links a second, growth and shares over size");
 const engine = readFileSync(here("build/engine.wasm")).toString("base64");

@@ -337,24 +337,28 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 	s := share.Of(received)
 	g := c.Entries[ask.Entry].Growth
 	covered := g.Kernel == 1 && len(outside(g)) == 0
+	z := n.Pulls()
 	betaMu := math.NaN() // outside the theory it would not be the pull newcomers feel
 	if covered {
-		betaMu = n.BetaMu(received)
+		betaMu = z.BetaMu(received)
 	}
 	name := namer(c, n.From())
 	e.network, e.received, e.name = n, received, name
 	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
 		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], math.Exp(-n.Sharpness * n.Energy[s.Leader]), s.Leader}}
 	full := Path{}
-	z := n.Pulls()
-	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))], func(received []int32) {
+	along := func(received []int32) {
 		full.Gini = append(full.Gini, share.Gini(received))
 		mu := math.NaN()
 		if covered {
 			mu = z.BetaMu(received)
 		}
 		full.BetaMu = append(full.BetaMu, wire.Num(mu))
-	})
+	}
+	if !ask.Columns {
+		along = nil
+	}
+	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))], along)
 	out.LeadChanges = path.LeadChanges()
 	if ask.Digest {
 		out.Digest = n.Digest()

@@ -72,7 +72,7 @@ func Gini(values []int32) float64 {
 		top = max(top, d)
 	}
 	// Sorted by counting; the few values far above the rest are sorted by themselves.
-	const dense = 4096
+	dense := min(top+1, 4096)
 	count := make([]int, dense)
 	var far []int32
 	for _, d := range values {

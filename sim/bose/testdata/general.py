@@ -1,4 +1,4 @@
-# The same solve with curves by a general-purpose library: scipy's quad and brentq. Prints the milliseconds it takes for a
+# The same solve with curves by a general-purpose library: scipy's quad, asked for 1e-11, and brentq. Prints the milliseconds it takes for a
 # few laws; ./build.sh bench sets them beside the solver's.
 import json, math, sys, time
 from scipy.integrate import quad
@@ -16,7 +16,7 @@ def solve(p, top, beta, condenses):
     total = quad(p, 0, top)[0]
 
     def integral(b, mu):
-        return quad(lambda e: p(e) / math.expm1(b * (e - mu)) if b * (e - mu) < 700 else 0.0, 0, top, limit=200)[0] / total
+        return quad(lambda e: p(e) / math.expm1(b * (e - mu)) if b * (e - mu) < 700 else 0.0, 0, top, limit=500, epsabs=0, epsrel=1e-11)[0] / total
 
     def potential(b):
         if condenses and integral(b, -1e-13) < 1:
