@@ -14,8 +14,9 @@ const allowed = `
 sim/internal/exact      <-
 sim/internal/near       <-
 sim/internal/gauss      <-
-sim/law                 <- sim/internal/exact sim/internal/gauss
-sim/bose                <- sim/internal/gauss sim/law
+sim/internal/double     <-
+sim/law                 <- sim/internal/double sim/internal/exact sim/internal/gauss
+sim/bose                <- sim/internal/double sim/internal/gauss sim/law
 sim/growth              <- sim/internal/exact sim/law
 sim/share               <-
 sim/standing            <- sim/bose

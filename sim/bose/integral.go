@@ -172,7 +172,10 @@ func (s *Spectrum) GroundIntegral(beta, mu float64) float64 {
 }
 
 // upTo returns the panel down to which nodes are needed: far below every scale of the integrand.
-func (s *Spectrum) upTo(beta, mu float64) bound {
+func (s *Spectrum) upTo(beta, mu float64) bound { return s.within(beta, mu, groundReach) }
+
+// within is upTo with another distance below the smallest scale.
+func (s *Spectrum) within(beta, mu, distance float64) bound {
 	if s.leveled() {
 		return bound{nodes: len(s.eps)}
 	}
@@ -180,7 +183,7 @@ func (s *Spectrum) upTo(beta, mu float64) bound {
 	if mu < 0 {
 		scale = math.Min(scale, math.Log(-mu))
 	}
-	to := math.Min(scale-groundReach, s.base)
+	to := math.Min(scale-distance, s.base)
 	s.reach(to)
 	return s.panels[sort.Search(len(s.panels), func(i int) bool { return s.panels[i].low <= to })]
 }
@@ -274,6 +277,28 @@ func (h *heated) integralAndSlope(mu float64) (i, slope float64) {
 		slope += n + n/y
 	}
 	return t.value(), h.beta * mu * slope
+}
+
+// gap returns I(beta, 0) - I(beta, mu), mu < 0, and its derivative with respect to ln(-mu), for a positive edge exponent.
+// Half the distance is enough, since what lies below is known to second order.
+func (h *heated) gap(mu float64) (gap, slope float64) {
+	b := h.within(h.beta, mu, groundReach/2)
+	h.fill(b.nodes)
+	y := math.Expm1(-h.beta * mu)
+	for k, a := range h.up[:b.nodes] {
+		u := a + y + a*y
+		if u > vast {
+			continue
+		}
+		n := h.mass[k] / u
+		gap += n * (1 + a) * (y / a)
+		slope += n + n/u
+	}
+	theta := h.edge.Theta
+	below := h.edge.Scale * math.Exp((theta+1)*b.low) / (theta + 1) / y
+	gap += h.edge.Scale*math.Exp(theta*b.low)/(h.beta*theta) - below
+	slope += below + below/y
+	return gap, -h.beta * mu * slope
 }
 
 // groundAndSlope returns I(beta, 0) and its derivative with respect to ln beta, for a positive edge exponent.

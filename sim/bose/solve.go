@@ -117,17 +117,23 @@ func (s *Spectrum) Solve(beta float64, rule Rule) (Solution, error) {
 	out.MeanFitness = s.Mean(func(e float64) float64 { return math.Exp(-beta * e) })
 	rounding := s.rounding(beta, out.GroundIntegral)
 	out.Errors = Errors{rounding, 0, rounding} // d ln I/d ln beta is -1 or steeper
-	if out.GroundIntegral < r {
+	surplus, miss := out.GroundIntegral-r, rounding*out.GroundIntegral
+	if math.Abs(surplus) < nearby*r {
+		if d, m, ok := s.surplus(beta, rule.precisely()); ok && m < miss {
+			surplus, miss = d, m
+		}
+	}
+	if surplus < 0 {
 		i := out.GroundIntegral
 		out.Regime = Condensate
-		out.Condensate = (1 - rule.OpenShare) - ((1+rule.OpenShare)+rule.HeadStart/rule.Links)*i
+		out.Condensate = -surplus * ((1 + rule.OpenShare) + rule.HeadStart/rule.Links)
 		out.DissolveHeadStart = rule.Links * (1/i - 1)
 		out.DissolveOpenShare = (1 - i) / (1 + i)
 		out.lead(1)
 		return out, nil
 	}
 	out.Regime = FitGetRich
-	mu, err := s.Mu(beta, r)
+	mu, err := s.mu(beta, r, surplus)
 	if err != nil {
 		return out, fmt.Errorf("the chemical potential at sharpness %g was not found: %w", beta, err)
 	}
@@ -136,7 +142,7 @@ func (s *Spectrum) Solve(beta float64, rule Rule) (Solution, error) {
 	byBeta, byMu := s.slopes(beta, out.BetaMu)
 	out.BetaMuSlope = -byBeta / byMu
 	out.MuSlope = (out.BetaMuSlope - out.BetaMu) / (beta * beta)
-	out.Errors.Mu = 1e-14 + rounding*r/(-out.BetaMu*byMu)
+	out.Errors.Mu = 1e-14 + miss/(-out.BetaMu*byMu)
 	return out, nil
 }
 
@@ -165,8 +171,16 @@ const exactMu, drawnMu = 1e-14, 1e-3
 // Mu returns the chemical potential: I(beta, mu) = r, for 0 < r <= I(beta, 0). Newton's method in ln(-mu), kept inside a
 // bracket: -ln(1 + 1/r)/beta is at or below the root, because every energy is >= 0. A root nearer to 0 than 1e-300 is
 // returned as -1e-300.
-func (s *Spectrum) Mu(beta, r float64) (float64, error) {
-	return s.heat(beta).potential(r, math.Log(math.Log1p(1/r)/beta)-1, exactMu)
+func (s *Spectrum) Mu(beta, r float64) (float64, error) { return s.mu(beta, r, math.NaN()) }
+
+// mu is Mu where I(beta, 0) - r is known as well, NaN if not.
+func (s *Spectrum) mu(beta, r, surplus float64) (float64, error) {
+	h := s.heat(beta)
+	start := math.Log(math.Log1p(1/r)/beta) - 1
+	if surplus < nearby*r && s.edge.Theta > 0 {
+		return h.nearTransition(surplus)
+	}
+	return h.potential(r, start, exactMu)
 }
 
 // errNoConvergence comes with the best mu so far.
@@ -210,6 +224,40 @@ func (h *heated) potential(r, start, tol float64) (float64, error) {
 			next = (low + high) / 2
 		}
 		if math.Abs(next-y) < tol*math.Max(1, math.Abs(y)) || high-low < tol {
+			return -math.Exp(next), nil
+		}
+		y = next
+	}
+	return -math.Exp(y), errNoConvergence
+}
+
+// nearTransition solves I(beta, 0) - I(beta, mu) = surplus by Newton's method between ln of both sides, in ln(-mu), kept
+// inside a bracket; the left side is a sum of positive terms. Where -mu is far below every other scale and the edge
+// exponent theta is well below 1 the left side is
+//
+//	(Scale/beta) (-mu)^theta pi/sin(pi theta).
+func (h *heated) nearTransition(surplus float64) (float64, error) {
+	low, high := math.Log(muLeast), math.Log(math.Log1p(1/(h.GroundIntegral(h.beta, 0)-surplus))/h.beta)
+	y := math.Log(surplus / h.beta)
+	if theta := h.edge.Theta; theta < 0.9 {
+		y = math.Log(surplus*h.beta*math.Sin(math.Pi*theta)/(math.Pi*h.edge.Scale)) / theta
+		if y < math.Min(h.base, h.top-math.Log(math.Max(1, h.beta)))-40/(1-theta) {
+			return -math.Exp(math.Max(y, low)), nil
+		}
+	}
+	y = math.Max(low, math.Min(y, high))
+	for range 200 {
+		gap, slope := h.gap(-math.Exp(y))
+		if gap < surplus {
+			low = y
+		} else {
+			high = y
+		}
+		next := y + math.Log(surplus/gap)*gap/slope
+		if !(next > low && next < high) {
+			next = (low + high) / 2
+		}
+		if math.Abs(next-y) < exactMu*math.Max(1, math.Abs(y)) || high-low < exactMu {
 			return -math.Exp(next), nil
 		}
 		y = next

@@ -293,6 +293,7 @@ func BenchmarkSolveWithCurves(b *testing.B) {
 	}{
 		{"condensate", law.Power{Theta: 1}, 3}, {"fit-get-rich", law.Power{Theta: 0.2}, 1}, {"beta", law.Beta{A: 2, B: 1.5}, 2}, {"never", law.Uniform{}, 8}, {"gamma", law.Gamma{Shape: 0.7, Scale: 1}, 2},
 		{"tiers", law.NewTiers([]float64{0, .5, 2}, []float64{.1, .3, .6}), 3}, {"drawn", twoHumps(b), 3}, {"tiny ground", tinyGround(b), 8}, {"formula", formula(b, "e*exp(-3*e)+0.2*e^4", 2), 3}, {"kinks", formula(b, "abs(e-0.3)*max(0,sin(9*e))+e^2", 2), 3},
+		{"power at margin 1", law.Power{Theta: 0.2}, nearly(law.Power{Theta: 0.2})}, {"beta at margin 1", law.Beta{A: 2, B: 1.5}, nearly(law.Beta{A: 2, B: 1.5})}, {"drawn at margin 1", twoHumps(b), nearly(twoHumps(b))}, {"formula at margin 1", formula(b, "e^0.3*exp(-e^2)", 4), nearly(formula(b, "e^0.3*exp(-e^2)", 4))},
 	} {
 		b.Run(c.name, func(b *testing.B) {
 			for b.Loop() {
@@ -306,6 +307,9 @@ func BenchmarkSolveWithCurves(b *testing.B) {
 		})
 	}
 }
+
+// nearly returns a sharpness just below the critical one.
+func nearly(l law.Law) float64 { return NewSpectrum(l).Critical(plain.Balance()) * (1 - 1e-7) }
 
 func twoHumps(t testing.TB) law.Law {
 	return drawn(t, law.Knot{}, law.Knot{Eps: .2, Density: .8}, law.Knot{Eps: .4, Density: .1}, law.Knot{Eps: .8, Density: 2}, law.Knot{Eps: 1.3})

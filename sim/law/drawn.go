@@ -14,6 +14,7 @@ type Knot struct{ Eps, Density float64 }
 type Drawn struct {
 	eps, density []float64
 	before       []float64 // mass below each knot
+	raw, height  []float64 // as given
 }
 
 // A Pieced law is smooth only between its knots.
@@ -50,6 +51,7 @@ func NewDrawn(knots []Knot) (Drawn, error) {
 	for i, k := range knots {
 		p.eps = append(p.eps, k.Eps-knots[0].Eps)
 		p.density = append(p.density, k.Density)
+		p.raw, p.height = append(p.raw, k.Eps), append(p.height, k.Density)
 		if i > 0 {
 			total += float64((p.eps[i] - p.eps[i-1]) * (p.density[i] + p.density[i-1]) / 2)
 		}

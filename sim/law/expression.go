@@ -6,6 +6,7 @@ import (
 	"strconv"
 	"strings"
 
+	"preponder/sim/internal/double"
 	"preponder/sim/internal/exact"
 )
 
@@ -20,29 +21,48 @@ type SyntaxError struct {
 
 func (e *SyntaxError) Error() string { return fmt.Sprintf("at character %d: %s", e.At, e.Reason) }
 
-// An expression of the energy e. Every step rounds by itself, so the value has the same bits on every machine.
-type expression func(e float64) float64
+// An expression of the energy e. Every step rounds by itself, so the value has the same bits on every machine; closely
+// gives 31 digits. Where one of the switches changes sign the value is not smooth.
+type expression struct {
+	value    func(e float64) float64
+	closely  func(e double.Number) double.Number
+	switches []func(e double.Number) double.Number
+}
+
+// number is what a function takes and gives in 31 digits.
+type number = double.Number
 
 // functions that an expression may call, by name.
 var functions = map[string]struct {
 	arguments int
 	of        func(x, y float64) float64
+	closely   func(x, y number) number
 }{
-	"exp":   {1, func(x, _ float64) float64 { return exact.Exp(x) }},
-	"ln":    {1, func(x, _ float64) float64 { return exact.Log(x) }},
-	"log":   {1, func(x, _ float64) float64 { return exact.Log(x) }},
-	"log10": {1, func(x, _ float64) float64 { return exact.Log(x) / math.Ln10 }},
-	"sqrt":  {1, func(x, _ float64) float64 { return math.Sqrt(x) }},
-	"abs":   {1, func(x, _ float64) float64 { return math.Abs(x) }},
-	"sin":   {1, func(x, _ float64) float64 { return exact.Sin(x) }},
-	"cos":   {1, func(x, _ float64) float64 { return exact.Cos(x) }},
-	"tan":   {1, func(x, _ float64) float64 { return exact.Sin(x) / exact.Cos(x) }},
-	"sinh":  {1, func(x, _ float64) float64 { return (exact.Exp(x) - exact.Exp(-x)) / 2 }},
-	"cosh":  {1, func(x, _ float64) float64 { return (exact.Exp(x) + exact.Exp(-x)) / 2 }},
-	"tanh":  {1, func(x, _ float64) float64 { return 1 - 2/(exact.Exp(2*x)+1) }},
-	"pow":   {2, power},
-	"min":   {2, math.Min},
-	"max":   {2, math.Max},
+	"exp":   {1, func(x, _ float64) float64 { return exact.Exp(x) }, func(x, _ number) number { return x.Exp() }},
+	"ln":    {1, func(x, _ float64) float64 { return exact.Log(x) }, func(x, _ number) number { return x.Log() }},
+	"log":   {1, func(x, _ float64) float64 { return exact.Log(x) }, func(x, _ number) number { return x.Log() }},
+	"log10": {1, func(x, _ float64) float64 { return exact.Log(x) / math.Ln10 }, func(x, _ number) number { return x.Log().Over(double.Of(10).Log()) }},
+	"sqrt":  {1, func(x, _ float64) float64 { return math.Sqrt(x) }, func(x, _ number) number { return x.Sqrt() }},
+	"abs":   {1, func(x, _ float64) float64 { return math.Abs(x) }, func(x, _ number) number { return x.Abs() }},
+	"sin":   {1, func(x, _ float64) float64 { return exact.Sin(x) }, func(x, _ number) number { sin, _ := x.SinCos(); return sin }},
+	"cos":   {1, func(x, _ float64) float64 { return exact.Cos(x) }, func(x, _ number) number { _, cos := x.SinCos(); return cos }},
+	"tan":   {1, func(x, _ float64) float64 { return exact.Sin(x) / exact.Cos(x) }, func(x, _ number) number { sin, cos := x.SinCos(); return sin.Over(cos) }},
+	"sinh":  {1, func(x, _ float64) float64 { return (exact.Exp(x) - exact.Exp(-x)) / 2 }, func(x, _ number) number { u := x.Expm1(); return u.Plus(u.Over(u.Plus(double.One))).Scaled(-1) }},
+	"cosh":  {1, func(x, _ float64) float64 { return (exact.Exp(x) + exact.Exp(-x)) / 2 }, func(x, _ number) number { return x.Exp().Plus(x.Negated().Exp()).Scaled(-1) }},
+	"tanh":  {1, func(x, _ float64) float64 { return 1 - 2/(exact.Exp(2*x)+1) }, func(x, _ number) number { u := x.Scaled(1).Expm1(); return u.Over(u.Plus(double.Of(2))) }},
+	"pow":   {2, power, number.Power},
+	"min": {2, math.Min, func(x, y number) number {
+		if y.Less(x) {
+			return y
+		}
+		return x
+	}},
+	"max": {2, math.Max, func(x, y number) number {
+		if x.Less(y) {
+			return y
+		}
+		return x
+	}},
 }
 
 // power is x^y; small whole powers by multiplication, negative bases with whole powers only.
@@ -78,23 +98,47 @@ func power(x, y float64) float64 {
 //	atom    = number | "e" | "pi" | name "(" sum { "," sum } ")" | "(" sum ")"
 func parse(text string) (expression, error) {
 	if n := len([]rune(text)); n > MaxExpression {
-		return nil, &SyntaxError{MaxExpression + 1, fmt.Sprintf("the formula has %d characters; %d are allowed", n, MaxExpression)}
+		return expression{}, &SyntaxError{MaxExpression + 1, fmt.Sprintf("the formula has %d characters; %d are allowed", n, MaxExpression)}
 	}
 	p := &parser{text: []rune(text)}
 	f, err := p.sum()
 	if err != nil {
-		return nil, err
+		return expression{}, err
 	}
 	if c := p.next(); c != 0 {
-		return nil, p.fail("%s", p.unexpected(c))
+		return expression{}, p.fail("%s", p.unexpected(c))
 	}
+	f.switches = p.switches
 	return f, nil
 }
 
 type parser struct {
-	text  []rune
-	at    int
-	depth int
+	text     []rune
+	at       int
+	depth    int
+	switches []func(e number) number
+}
+
+// join is the expression of a function of two others.
+func join(a, b expression, of func(x, y float64) float64, closely func(x, y number) number) expression {
+	return expression{
+		value:   func(e float64) float64 { return of(a.value(e), b.value(e)) },
+		closely: func(e number) number { return closely(a.closely(e), b.closely(e)) },
+	}
+}
+
+// through is the expression of a function of one other.
+func through(a expression, of func(x, _ float64) float64, closely func(x, _ number) number) expression {
+	return expression{
+		value:   func(e float64) float64 { return of(a.value(e), 0) },
+		closely: func(e number) number { return closely(a.closely(e), number{}) },
+	}
+}
+
+// constant is the expression of a number.
+func constant(v number) expression {
+	x := v.Float()
+	return expression{value: func(float64) float64 { return x }, closely: func(number) number { return v }}
 }
 
 func (p *parser) fail(format string, a ...any) error {
@@ -135,7 +179,7 @@ func (p *parser) unexpected(c rune) string {
 
 func (p *parser) sum() (expression, error) {
 	if p.depth++; p.depth > 60 {
-		return nil, p.fail("brackets are nested too deeply")
+		return expression{}, p.fail("brackets are nested too deeply")
 	}
 	defer func() { p.depth-- }()
 	f, err := p.product()
@@ -145,17 +189,17 @@ func (p *parser) sum() (expression, error) {
 		switch {
 		case p.take('+'):
 			if b, err = p.product(); err == nil {
-				f = func(e float64) float64 { return a(e) + b(e) }
+				f = join(a, b, func(x, y float64) float64 { return x + y }, number.Plus)
 			}
 		case p.take('-') || p.take('−'):
 			if b, err = p.product(); err == nil {
-				f = func(e float64) float64 { return a(e) - b(e) }
+				f = join(a, b, func(x, y float64) float64 { return x - y }, number.Minus)
 			}
 		default:
 			return f, nil
 		}
 	}
-	return nil, err
+	return expression{}, err
 }
 
 func (p *parser) product() (expression, error) {
@@ -166,20 +210,20 @@ func (p *parser) product() (expression, error) {
 		switch {
 		case p.take('*') || p.take('·') || p.take('×'):
 			if p.next() == '*' {
-				return nil, p.fail("powers are written with ^, as in e^2")
+				return expression{}, p.fail("powers are written with ^, as in e^2")
 			}
 			if b, err = p.signed(); err == nil {
-				f = func(e float64) float64 { return a(e) * b(e) }
+				f = join(a, b, func(x, y float64) float64 { return float64(x * y) }, number.Times)
 			}
 		case p.take('/'):
 			if b, err = p.signed(); err == nil {
-				f = func(e float64) float64 { return a(e) / b(e) }
+				f = join(a, b, func(x, y float64) float64 { return x / y }, number.Over)
 			}
 		default:
 			return f, nil
 		}
 	}
-	return nil, err
+	return expression{}, err
 }
 
 func (p *parser) signed() (expression, error) {
@@ -194,7 +238,7 @@ func (p *parser) signed() (expression, error) {
 			if err != nil || !minus {
 				return f, err
 			}
-			return func(e float64) float64 { return -f(e) }, nil
+			return through(f, func(x, _ float64) float64 { return -x }, func(x, _ number) number { return x.Negated() }), nil
 		}
 	}
 }
@@ -205,28 +249,28 @@ func (p *parser) raised() (expression, error) {
 		return a, err
 	}
 	if p.depth++; p.depth > 60 {
-		return nil, p.fail("powers are nested too deeply")
+		return expression{}, p.fail("powers are nested too deeply")
 	}
 	defer func() { p.depth-- }()
 	b, err := p.signed()
 	if err != nil {
-		return nil, err
+		return expression{}, err
 	}
-	return func(e float64) float64 { return power(a(e), b(e)) }, nil
+	return join(a, b, power, number.Power), nil
 }
 
 func (p *parser) atom() (expression, error) {
 	switch c := p.next(); {
 	case c == 0:
 		if len(strings.TrimSpace(string(p.text))) == 0 {
-			return nil, p.fail("the formula is empty; write a density in the energy e, as e*(2-e)")
+			return expression{}, p.fail("the formula is empty; write a density in the energy e, as e*(2-e)")
 		}
-		return nil, p.fail("the formula ends too early")
+		return expression{}, p.fail("the formula ends too early")
 	case c == '(':
 		p.at++
 		f, err := p.sum()
 		if err == nil && !p.take(')') {
-			return nil, p.fail("a closing bracket is missing")
+			return expression{}, p.fail("a closing bracket is missing")
 		}
 		return f, err
 	case isDigit(c) || c == '.':
@@ -234,7 +278,7 @@ func (p *parser) atom() (expression, error) {
 	case isLetter(c):
 		return p.name()
 	default:
-		return nil, p.fail("a number, e, a function or a bracket is missing before %q", string(c))
+		return expression{}, p.fail("a number, e, a function or a bracket is missing before %q", string(c))
 	}
 }
 
@@ -268,9 +312,9 @@ func (p *parser) number() (expression, error) {
 	v, err := strconv.ParseFloat(string(p.text[from:p.at]), 64)
 	if err != nil {
 		p.at = from
-		return nil, p.fail("this number cannot be read")
+		return expression{}, p.fail("this number cannot be read")
 	}
-	return func(float64) float64 { return v }, nil
+	return constant(double.Of(v)), nil
 }
 
 func (p *parser) name() (expression, error) {
@@ -281,23 +325,23 @@ func (p *parser) name() (expression, error) {
 	name := string(p.text[from:p.at])
 	switch name {
 	case "e", "ε", "E":
-		return func(e float64) float64 { return e }, nil
+		return expression{value: func(e float64) float64 { return e }, closely: func(e number) number { return e }}, nil
 	case "pi", "π":
-		return func(float64) float64 { return math.Pi }, nil
+		return constant(double.Pi), nil
 	}
 	f, known := functions[name]
 	if !known {
 		p.at = from
-		return nil, p.fail("%q is not known; there are e (the energy), pi, exp, ln, log10, sqrt, abs, sin, cos, tan, sinh, cosh, tanh, pow, min, max", name)
+		return expression{}, p.fail("%q is not known; there are e (the energy), pi, exp, ln, log10, sqrt, abs, sin, cos, tan, sinh, cosh, tanh, pow, min, max", name)
 	}
 	if !p.take('(') {
-		return nil, p.fail("%s needs its argument in brackets", name)
+		return expression{}, p.fail("%s needs its argument in brackets", name)
 	}
 	var of []expression
 	for {
 		x, err := p.sum()
 		if err != nil {
-			return nil, err
+			return expression{}, err
 		}
 		of = append(of, x)
 		if !p.take(',') {
@@ -305,15 +349,21 @@ func (p *parser) name() (expression, error) {
 		}
 	}
 	if !p.take(')') {
-		return nil, p.fail("a closing bracket is missing")
+		return expression{}, p.fail("a closing bracket is missing")
 	}
 	if len(of) != f.arguments {
-		return nil, p.fail("%s takes %d argument%s, not %d", name, f.arguments, map[bool]string{true: "s"}[f.arguments > 1], len(of))
+		return expression{}, p.fail("%s takes %d argument%s, not %d", name, f.arguments, map[bool]string{true: "s"}[f.arguments > 1], len(of))
 	}
 	x := of[0]
+	if name == "abs" {
+		p.switches = append(p.switches, x.closely)
+	}
 	if f.arguments == 1 {
-		return func(e float64) float64 { return f.of(x(e), 0) }, nil
+		return through(x, f.of, f.closely), nil
 	}
 	y := of[1]
-	return func(e float64) float64 { return f.of(x(e), y(e)) }, nil
+	if name == "min" || name == "max" {
+		p.switches = append(p.switches, join(x, y, nil, number.Minus).closely)
+	}
+	return join(x, y, f.of, f.closely), nil
 }

@@ -5,6 +5,7 @@ import (
 	"math"
 	"sync"
 
+	"preponder/sim/internal/double"
 	"preponder/sim/internal/exact"
 	"preponder/sim/internal/gauss"
 )
@@ -19,6 +20,9 @@ type Formula struct {
 	breaks  []float64
 	unsure  float64
 	largest float64
+	// the leading term of the density times e, in 31 digits, and ln e below which it is right; NaN where it was not found
+	theta, scale double.Number
+	sure         float64
 }
 
 // recent keeps the formulas made last: while something else is dragged the same one is asked for in every frame.
@@ -63,12 +67,13 @@ func newFormula(text string, top float64) (Formula, error) {
 		return Formula{}, err
 	}
 	p.unsure = unsure
+	p.refine(&edge)
 	p.panels = &panels{edge: edge}
 	low := math.Min(exact.Log(top)-1, math.Max(exact.Log(top)-60, exact.Log(edge.Below)))
 	bad := -1.0
 	g := func(x float64) float64 {
 		e := math.Min(top, exact.Exp(x))
-		v := f(e)
+		v := f.value(e)
 		if !(v >= 0 && v <= math.MaxFloat64) {
 			if bad < 0 || e < bad {
 				bad = e
@@ -96,7 +101,7 @@ func newFormula(text string, top float64) (Formula, error) {
 
 // refuse says why the value at e is no density.
 func (p *Formula) refuse(e float64) error {
-	switch v := p.f(e); {
+	switch v := p.f.value(e); {
 	case v < 0:
 		return fmt.Errorf("the density is negative, %.4g, at e = %.6g; a density is 0 or more everywhere from 0 to %g", v, e, p.top)
 	case math.IsInf(v, 1):
@@ -111,13 +116,13 @@ func (p *Formula) survey() error {
 	const n = 512
 	for i := 1; i <= n; i++ {
 		e := p.top * float64(i) / n
-		v := p.f(e)
+		v := p.f.value(e)
 		if !(v >= 0 && v <= math.MaxFloat64) {
 			return p.refuse(e)
 		}
 		p.largest = math.Max(p.largest, v)
 	}
-	if v := p.f(0); v < 0 {
+	if v := p.f.value(0); v < 0 {
 		return p.refuse(0)
 	}
 	if p.largest == 0 {
@@ -132,10 +137,10 @@ func (p *Formula) survey() error {
 // two neighbouring slopes agree best: small energies hide the next term, too small ones drown in rounding.
 func (p *Formula) findEdge() (Edge, float64, error) {
 	const steps = 900 // halvings
-	if v := p.f(0); v > 0 && v <= math.MaxFloat64 {
+	if v := p.f.value(0); v > 0 && v <= math.MaxFloat64 {
 		below := p.top
 		for k := 1; k < steps; k++ {
-			if below = math.Ldexp(p.top, -k); math.Abs(p.f(below)/v-1) <= 4e-16 {
+			if below = math.Ldexp(p.top, -k); math.Abs(p.f.value(below)/v-1) <= 4e-16 {
 				break
 			}
 		}
@@ -144,7 +149,7 @@ func (p *Formula) findEdge() (Edge, float64, error) {
 	slope := make([]float64, 0, steps)
 	first := 0 // halvings before the first slope: the far end may have vanished
 	for k := 1; k < steps; k++ {
-		a, b := p.f(math.Ldexp(p.top, -k-1)), p.f(math.Ldexp(p.top, -k))
+		a, b := p.f.value(math.Ldexp(p.top, -k-1)), p.f.value(math.Ldexp(p.top, -k))
 		if !(a > 0 && b > 0) || math.IsInf(a, 0) || math.IsInf(b, 0) {
 			if len(slope) > 3 {
 				break
@@ -179,20 +184,57 @@ func (p *Formula) findEdge() (Edge, float64, error) {
 		return Edge{}, 0, fmt.Errorf("the density rises like e^%.3g at e = 0, too steeply to be integrated; the exponent must be above -1", theta)
 	}
 	below := math.Ldexp(p.top, -first-best-2)
-	return Edge{Theta: theta, Scale: exact.Exp(exact.Log(p.f(below)) - float64(theta*exact.Log(below))), Below: below}, unsure, nil
+	return Edge{Theta: theta, Scale: exact.Exp(exact.Log(p.f.value(below)) - float64(theta*exact.Log(below))), Below: below}, unsure, nil
+}
+
+// refine finds the leading term in 31 digits where it stands out from the next one by more than float64 can see: the
+// slope of ln p over ln e where two slopes far apart agree best. The edge takes over its exponent.
+func (p *Formula) refine(edge *Edge) {
+	p.theta, p.scale = double.Of(math.NaN()), double.Of(math.NaN())
+	if edge.Scale == 0 || edge.Theta <= 0 {
+		return
+	}
+	value := func(x float64) double.Number { return p.f.closely(double.Of(x).Exp()).Log() }
+	const step, apart = 16, 4
+	best, where := math.Inf(1), 0.0
+	var theta, last double.Number
+	for x := exact.Log(p.top) - step; x > -600; x -= step {
+		slope := value(x).Minus(value(x - apart)).Over(double.Of(apart))
+		if !slope.Finite() {
+			break
+		}
+		miss := math.Abs(slope.Minus(last).Float())
+		if last.Finite() && x < exact.Log(p.top)-step && miss < best {
+			best, where, theta = miss, x, slope
+		}
+		last = slope
+		if miss < 1e-25 {
+			break
+		}
+	}
+	if !(best < 1e-19) || math.Abs(theta.Float()-edge.Theta) > math.Max(10*p.unsure, 1e-9) {
+		return
+	}
+	if near := math.Round(theta.Float()*64) / 64; math.Abs(theta.Minus(double.Of(near)).Float()) < 1e-20 {
+		theta = double.Of(near)
+	}
+	p.theta, p.scale = theta, value(where).Minus(theta.Times(double.Of(where))).Exp()
+	p.sure = where
+	p.unsure = 10 * best
+	edge.Theta, edge.Scale = theta.Float(), p.scale.Float()
 }
 
 // thin handles a density without a leading power: 0 on a stretch, which is refused, or thinner than any power.
 func (p *Formula) thin() (Edge, float64, error) {
 	low, high := 0.0, p.top
 	for range 200 { // the end of the stretch where the value is 0
-		if m := (low + high) / 2; p.f(m) > 0 {
+		if m := (low + high) / 2; p.f.value(m) > 0 {
 			high = m
 		} else {
 			low = m
 		}
 	}
-	if p.f(1.01*high) > 1e-250*p.largest {
+	if p.f.value(1.01*high) > 1e-250*p.largest {
 		return Edge{}, 0, fmt.Errorf("the density is 0 from e = 0 to %.4g; the fittest members have energy 0, so move the formula there, with (e + %.4g) in place of e", high, high)
 	}
 	return Edge{Theta: 50, Scale: 0, Below: high}, 0, nil
@@ -206,7 +248,7 @@ func (p Formula) Density(eps float64) float64 {
 	case eps < p.panels.edge.Below && eps > 0:
 		return p.panels.edge.Scale * math.Pow(eps, p.panels.edge.Theta)
 	}
-	return math.Max(0, p.f(eps)/p.total)
+	return math.Max(0, p.f.value(eps)/p.total)
 }
 
 func (p Formula) Cumulative(eps float64) float64 {

@@ -42,14 +42,7 @@ func (p *panels) cut(g func(x float64) float64, low, high float64) (at float64, 
 	for len(todo) > 0 {
 		q := todo[len(todo)-1]
 		todo = todo[:len(todo)-1]
-		doubt, most := 0.0, 0.0
-		for k, c := range q.g {
-			if k >= gauss.Points-3 {
-				doubt += math.Abs(c)
-			}
-			most = math.Max(most, math.Abs(c))
-		}
-		if doubt <= resolved*most || doubt*q.width <= negligible*total || q.width < thinnest {
+		if !q.unsettled() || q.doubt() <= negligible*total || q.width < thinnest {
 			p.list = append(p.list, q)
 			continue
 		}
@@ -68,6 +61,24 @@ func fit(g func(x float64) float64, low, width float64) panel {
 		v[i] = g(low + float64(width*(t+1))/2)
 	}
 	return panel{low: low, width: width, g: gauss.Through(v)}
+}
+
+// doubt is the mass of the last coefficients.
+func (q panel) doubt() float64 {
+	sum := 0.0
+	for _, c := range q.g[gauss.Points-3:] {
+		sum += math.Abs(c)
+	}
+	return sum * q.width
+}
+
+// unsettled tells whether the last coefficients are more than rounding.
+func (q panel) unsettled() bool {
+	most := 0.0
+	for _, c := range q.g {
+		most = math.Max(most, math.Abs(c))
+	}
+	return q.doubt() > resolved*most*q.width
 }
 
 func (q panel) mass() float64 { return float64(q.width * q.g[0]) }

@@ -47,7 +47,13 @@ def whole(g, pts, s):
     """The integral of g over the pieces; g ~ e^(s-1) at 0, straightened by e = a u^(1/s)."""
     a = pts[1]
     first = quad(lambda u: g(a * u ** (1 / s)) * a / s * u ** (1 / s - 1), [0, 1])
-    return first + (quad(g, pts[1:]) if len(pts) > 2 else 0)
+    rest = mpf(0)
+    for lo, hi in zip(pts[1:], pts[2:]):
+        if hi / lo > 3:
+            rest += quad(lambda x: g(exp(x)) * exp(x), [log(lo), log(hi)])
+        else:
+            rest += quad(g, [lo, hi])
+    return first + rest
 
 
 def splits(ends, scales):
@@ -58,9 +64,9 @@ def splits(ends, scales):
             pts.add(s * mpf(10) ** j)
     for a in sorted(scales)[:1]:
         x = a
-        while x < ends[-1] and len(pts) < 60:
+        while x < ends[-1]:
             pts.add(x)
-            x *= 30
+            x *= 30 if x > 1e-9 else 1e6
     return [mpf(0)] + sorted(x for x in pts if 0 < x <= ends[-1])
 
 
@@ -80,7 +86,9 @@ def integrals(f, ends, theta, b, mu):
 
 
 def check(c):
-    law, b, r = c["law"], mpf(c["beta"]), mpf(c["balance"])
+    law, b = c["law"], mpf(c["beta"])
+    links, start, open = [mpf(x) for x in c["rule"]]
+    r = links * (1 - open) / (links * (1 + open) + start)
     out = {}
     if law["family"] == "tiers":
         e = [mpf(x["energy"]) for x in law["tiers"]]

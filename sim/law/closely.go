@@ -1,0 +1,188 @@
+package law
+
+import (
+	"math"
+	"sort"
+
+	"preponder/sim/internal/double"
+	"preponder/sim/internal/exact"
+)
+
+// A Closely law can give its density in about 31 digits, for what is a small difference of integrals over it.
+type Closely interface {
+	// Closely returns the density; false where it has none that can be told so closely.
+	Closely() (Close, bool)
+}
+
+// A Close density.
+type Close struct {
+	// Mass returns p(e) e at e = exp(x), up to a factor that is common to all.
+	Mass func(x, e double.Number) double.Number
+	// Ends are the values of ln e between which Mass is smooth, ascending; the last is the top.
+	Ends []double.Number
+	// Theta and Scale are the leading term Scale e^(Theta+1) of Mass at the ground level, with the same factor, right to
+	// about 1e-21 where ln e is below Below.
+	Theta, Scale double.Number
+	Below        float64
+	// Doubt is a sum over e of the share of the mass that the pieces do not settle.
+	Doubt float64
+}
+
+// beyond is where a law without a top is cut: exp(-beyond) is below 1e-32.
+const beyond = 75
+
+// Closely: e^(theta+1).
+func (p Power) Closely() (Close, bool) {
+	s := double.Of(p.Theta).Plus(double.One)
+	return Close{
+		Mass: func(x, _ double.Number) double.Number { return s.Times(x).Exp() },
+		Ends: []double.Number{{}}, Theta: double.Of(p.Theta), Scale: double.One, Below: 700,
+	}, true
+}
+
+// Closely: exp(k x - e/s - a constant that keeps it within range).
+func (p Gamma) Closely() (Close, bool) {
+	k, s := double.Of(p.Shape), double.Of(p.Scale)
+	norm := double.Of(exact.LogGamma(p.Shape) + p.Shape*math.Log(p.Scale))
+	top := beyond + 2*p.Shape
+	for range 60 {
+		top = beyond + p.Shape*math.Log(top)
+	}
+	return Close{
+		Mass: func(x, e double.Number) double.Number { return k.Times(x).Minus(e.Over(s)).Minus(norm).Exp() },
+		Ends: []double.Number{double.Of(math.Log(top * p.Scale))}, Theta: k.Minus(double.One), Scale: norm.Negated().Exp(), Below: math.Log(p.Scale) - 50,
+	}, true
+}
+
+// Closely: exp(-a e) (1 - exp(-e))^(b-1) e, with a constant that keeps it within range.
+func (p Beta) Closely() (Close, bool) {
+	a, theta, norm := double.Of(p.A), double.Of(p.B).Minus(double.One), double.Of(p.logNorm())
+	return Close{
+		Mass: func(x, e double.Number) double.Number {
+			return theta.Times(e.Negated().Expm1().Negated().Log()).Minus(a.Times(e)).Plus(x).Minus(norm).Exp()
+		},
+		Ends: []double.Number{double.Of(math.Log((beyond - norm.Float()) / p.A))}, Theta: theta, Scale: norm.Negated().Exp(), Below: -50 - math.Log(1+p.A+p.B),
+	}, true
+}
+
+// Closely: straight lines from knot to knot.
+func (p Drawn) Closely() (Close, bool) {
+	var eps []double.Number
+	c := Close{Below: 700}
+	for i, e := range p.raw {
+		eps = append(eps, double.Of(e).Minus(double.Of(p.raw[0])))
+		if i > 0 {
+			c.Ends = append(c.Ends, eps[i].Log())
+		}
+	}
+	slope := make([]double.Number, len(eps)-1)
+	for i := range slope {
+		slope[i] = double.Of(p.height[i+1]).Minus(double.Of(p.height[i])).Over(eps[i+1].Minus(eps[i]))
+	}
+	c.Mass = func(_, e double.Number) double.Number {
+		i := max(0, min(sort.Search(len(eps), func(i int) bool { return e.Less(eps[i]) })-1, len(eps)-2))
+		return slope[i].Times(e.Minus(eps[i])).Plus(double.Of(p.height[i])).Times(e)
+	}
+	if p.height[0] > 0 {
+		return c, false // no transition
+	}
+	c.Theta, c.Scale = double.One, slope[0]
+	return c, true
+}
+
+// Closely is that of the law, moved by ln By.
+func (p Scaled) Closely() (Close, bool) {
+	inner, ok := p.Law.(Closely)
+	if !ok {
+		return Close{}, false
+	}
+	c, ok := inner.Closely()
+	if !ok {
+		return c, false
+	}
+	by := double.Of(p.By)
+	shift, mass := by.Log(), c.Mass
+	c.Mass = func(x, e double.Number) double.Number { return mass(x.Minus(shift), e.Over(by)) }
+	ends := c.Ends
+	c.Ends = nil
+	for _, x := range ends {
+		c.Ends = append(c.Ends, x.Plus(shift))
+	}
+	c.Scale = c.Scale.Times(shift.Times(c.Theta.Plus(double.One)).Negated().Exp())
+	c.Below += shift.Float()
+	return c, true
+}
+
+// Closely evaluates the expression in 31 digits; pieces end where the panels end and where a switch turns.
+func (p Formula) Closely() (Close, bool) {
+	if !p.theta.Finite() || !p.scale.Finite() {
+		return Close{}, false
+	}
+	c := Close{Theta: p.theta, Scale: p.scale, Below: p.sure}
+	c.Mass = func(_, e double.Number) double.Number {
+		v := p.f.closely(e).Times(e)
+		if v.Float() < 0 {
+			return double.Number{}
+		}
+		return v
+	}
+	top := double.Of(p.top).Log()
+	list := p.panels.list
+	for i, q := range list {
+		a, b := double.Of(q.low), top
+		if i+1 < len(list) {
+			b = double.Of(list[i+1].low)
+		}
+		for _, turn := range p.f.switches {
+			if x, ok := turning(turn, a, b); ok {
+				c.Ends = append(c.Ends, x)
+			}
+		}
+		c.Ends = append(c.Ends, b)
+	}
+	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
+	low := list[0].low
+	for _, b := range c.Ends[:len(c.Ends):len(c.Ends)] {
+		p.settle(&c, low, b.Float(), 500)
+		low = b.Float()
+	}
+	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
+	return c, true
+}
+
+// settle cuts the piece from a to b, in ln e, until 16 points tell each part of it, or adds it to the doubt.
+func (p *Formula) settle(c *Close, a, b float64, budget int) int {
+	q := fit(p.mass, a, b-a)
+	if !q.unsettled() || q.doubt() < 1e-25 {
+		return budget
+	}
+	if m := a + (b-a)/2; b-a > 1e-14 && budget > 0 {
+		c.Ends = append(c.Ends, double.Of(m))
+		return p.settle(c, m, b, p.settle(c, a, m, budget-1))
+	}
+	c.Doubt += q.doubt() * math.Exp(-a)
+	return budget
+}
+
+// mass returns the normalised density times e at e = exp(x).
+func (p *Formula) mass(x float64) float64 {
+	e := math.Min(p.top, exact.Exp(x))
+	return float64(math.Max(0, p.f.value(e))*e) / p.total
+}
+
+// turning returns the value of x = ln e in (a, b) at which f changes its sign, by bisection.
+func turning(f func(e double.Number) double.Number, a, b double.Number) (double.Number, bool) {
+	sign := f(a.Exp()).Float() < 0
+	if sign == (f(b.Exp()).Float() < 0) {
+		return double.Number{}, false
+	}
+	for range 110 {
+		m := a.Plus(b).Scaled(-1)
+		if f(m.Exp()).Float() < 0 == sign {
+			a = m
+		} else {
+			b = m
+		}
+	}
+	return b, true
+}
