@@ -14,7 +14,7 @@ const allowed = `
 sim/internal/exact      <-
 sim/internal/near       <-
 sim/internal/gauss      <-
-sim/internal/double     <-
+sim/internal/double     <- sim/internal/exact
 sim/law                 <- sim/internal/double sim/internal/exact sim/internal/gauss
 sim/bose                <- sim/internal/double sim/internal/gauss sim/law
 sim/growth              <- sim/internal/exact sim/law

@@ -113,6 +113,9 @@ func (p Scaled) Closely() (Close, bool) {
 	return c, true
 }
 
+// mostCloseCalls of functions at one point of each piece: what 31 digits may cost.
+const mostCloseCalls = 500
+
 // Closely evaluates the expression in 31 digits; pieces end where the panels end and where a switch turns.
 func (p Formula) Closely() (Close, bool) {
 	if !p.theta.Finite() || !p.scale.Finite() {
@@ -141,10 +144,13 @@ func (p Formula) Closely() (Close, bool) {
 		c.Ends = append(c.Ends, b)
 	}
 	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
-	low := list[0].low
+	low, budget := list[0].low, 300
 	for _, b := range c.Ends[:len(c.Ends):len(c.Ends)] {
-		p.settle(&c, low, b.Float(), 500)
+		budget = p.settle(&c, low, b.Float(), budget)
 		low = b.Float()
+	}
+	if len(c.Ends)*p.f.calls > mostCloseCalls {
+		return Close{}, false
 	}
 	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
 	return c, true

@@ -27,6 +27,7 @@ type expression struct {
 	value    func(e float64) float64
 	closely  func(e double.Number) double.Number
 	switches []func(e double.Number) double.Number
+	calls    int // of functions and powers, at least 1: what an evaluation costs
 }
 
 // number is what a function takes and gives in 31 digits.
@@ -108,7 +109,7 @@ func parse(text string) (expression, error) {
 	if c := p.next(); c != 0 {
 		return expression{}, p.fail("%s", p.unexpected(c))
 	}
-	f.switches = p.switches
+	f.switches, f.calls = p.switches, max(1, p.calls)
 	return f, nil
 }
 
@@ -117,6 +118,7 @@ type parser struct {
 	at       int
 	depth    int
 	switches []func(e number) number
+	calls    int
 }
 
 // join is the expression of a function of two others.
@@ -256,6 +258,7 @@ func (p *parser) raised() (expression, error) {
 	if err != nil {
 		return expression{}, err
 	}
+	p.calls++
 	return join(a, b, power, number.Power), nil
 }
 
@@ -354,6 +357,7 @@ func (p *parser) name() (expression, error) {
 	if len(of) != f.arguments {
 		return expression{}, p.fail("%s takes %d argument%s, not %d", name, f.arguments, map[bool]string{true: "s"}[f.arguments > 1], len(of))
 	}
+	p.calls++
 	x := of[0]
 	if name == "abs" {
 		p.switches = append(p.switches, x.closely)

@@ -33,6 +33,10 @@ var recent struct {
 
 const mostRecent = 8
 
+// mostPanels a formula is cut into, and mostCalls of functions at one point of each: a formula is made or refused within
+// 50 ms, in the browser too.
+const mostPanels, mostCalls = 700, 3000
+
 // NewFormula returns the law with this density. Errors say where the expression stops making sense, or at which energy
 // its value is no density.
 func NewFormula(text string, top float64) (Formula, error) {
@@ -82,7 +86,7 @@ func newFormula(text string, top float64) (Formula, error) {
 		}
 		return float64(v * e)
 	}
-	at, ok := p.panels.cut(g, low, exact.Log(top))
+	at, ok := p.panels.cut(g, low, exact.Log(top), min(mostPanels, mostCalls/f.calls))
 	switch {
 	case bad >= 0:
 		return Formula{}, p.refuse(bad)

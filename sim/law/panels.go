@@ -23,14 +23,14 @@ type panel struct {
 }
 
 const (
-	maxPanels  = 700
 	resolved   = 1e-13 // of the last coefficients against the largest
 	negligible = 3e-13 // of a panel's doubt against all mass
 	thinnest   = 1e-15 // panels are not cut below this width: a jump lies there
 )
 
-// cut fills in panels for the mass density g from low to high in ln e; false where it varies too finely, with the place.
-func (p *panels) cut(g func(x float64) float64, low, high float64) (at float64, ok bool) {
+// cut fills in panels for the mass density g from low to high in ln e; false where it varies too finely for so many panels,
+// with the place.
+func (p *panels) cut(g func(x float64) float64, low, high float64, most int) (at float64, ok bool) {
 	first := int(math.Ceil(high - low))
 	total := 0.0
 	var todo []panel
@@ -46,7 +46,7 @@ func (p *panels) cut(g func(x float64) float64, low, high float64) (at float64, 
 			p.list = append(p.list, q)
 			continue
 		}
-		if len(p.list)+len(todo) > maxPanels {
+		if len(p.list)+len(todo) > most {
 			return math.Exp(q.low), false
 		}
 		todo = append(todo, fit(g, q.low, q.width/2), fit(g, q.low+q.width/2, q.width/2))

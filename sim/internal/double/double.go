@@ -2,7 +2,11 @@
 // large ones. Products that could be fused with a sum are converted explicitly, as in package exact.
 package double
 
-import "math"
+import (
+	"math"
+
+	"preponder/sim/internal/exact"
+)
 
 // A Number is the unevaluated sum hi + lo, |lo| at most half a unit in the last place of hi. Its range is that of float64
 // up to about 1e290; past it results are NaN.
@@ -150,7 +154,7 @@ func reduced(x Number) (root Number, k int, s Number) {
 func (a Number) Exp() Number {
 	switch {
 	case a.hi > 700:
-		return Of(math.Exp(a.hi))
+		return Of(exact.Exp(a.hi))
 	case a.hi < -740:
 		return Number{}
 	}
@@ -173,13 +177,13 @@ func (a Number) Expm1() Number {
 
 // Log returns ln a by one step of Newton's method.
 func (a Number) Log() Number {
-	y := math.Log(a.hi)
+	y := exact.Log(a.hi)
 	if math.IsInf(y, 0) || math.IsNaN(y) {
 		return Of(y)
 	}
 	m, k := math.Frexp(a.hi)
 	f := Number{m, math.Ldexp(a.lo, -k)}
-	z := Of(math.Log(m))
+	z := Of(exact.Log(m))
 	z = z.Plus(f.Times(z.Negated().Exp()).Minus(One))
 	return z.Plus(Ln2.By(float64(k)))
 }
@@ -202,7 +206,7 @@ func (a Number) Power(b Number) Number {
 		return p
 	}
 	if a.hi <= 0 {
-		return Of(math.Pow(a.hi, b.hi))
+		return Of(math.Pow(a.hi, b.hi)) // 0, infinite or not a number
 	}
 	return b.Times(a.Log()).Exp()
 }
@@ -213,7 +217,14 @@ func (a Number) SinCos() (sin, cos Number) {
 	q := math.Floor(a.hi/half.hi + 0.5)
 	x := a.Minus(half.By(q))
 	square := x.Times(x)
-	for n := len(inverse) - 2; n >= 0; n -= 2 {
+	const far = 16 // terms from here on are too small for their second half to count
+	s, c := 0.0, 0.0
+	for n := len(inverse) - 2; n >= far; n -= 2 {
+		s = inverse[n+1].hi - float64(s*square.hi)
+		c = inverse[n].hi - float64(c*square.hi)
+	}
+	sin, cos = Of(s), Of(c)
+	for n := far - 2; n >= 0; n -= 2 {
 		sin = inverse[n+1].Minus(sin.Times(square))
 		cos = inverse[n].Minus(cos.Times(square))
 	}
