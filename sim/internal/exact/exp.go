@@ -29,13 +29,16 @@ func Exp(x float64) float64 {
 	lo := float64(float64(k) * ln2Low)
 	r := hi - lo
 	t := float64(r * r)
-	c := 4.13813679705723846039e-08
-	for _, p := range [...]float64{-1.65339022054652515390e-06, 6.61375632143793436117e-05, -2.77777777770155933842e-03, 1.66666666666666019037e-01} {
-		c = float64(t*c) + p
-	}
+	c := float64(t*4.13813679705723846039e-08) - 1.65339022054652515390e-06
+	c = float64(t*c) + 6.61375632143793436117e-05
+	c = float64(t*c) - 2.77777777770155933842e-03
+	c = float64(t*c) + 1.66666666666666019037e-01
 	c = r - float64(t*c)
 	y := 1 - ((lo - float64(r*c)/(2-c)) - hi)
-	return math.Ldexp(y, k)
+	if k < -1020 || k > 1020 {
+		return math.Ldexp(y, k)
+	}
+	return y * math.Float64frombits(uint64(k+1023)<<52)
 }
 
 // Log returns ln x, error below 1 ulp: x = 2^k f, sqrt(1/2) < f < sqrt(2), then the series of FDLIBM e_log.c in
@@ -49,7 +52,13 @@ func Log(x float64) float64 {
 	case x == 0:
 		return math.Inf(-1)
 	}
-	f1, e := math.Frexp(x)
+	var f1 float64
+	var e int
+	if b := math.Float64bits(x); b>>52 > 0 && b>>52 < 0x7ff {
+		f1, e = math.Float64frombits(b&(1<<52-1)|1022<<52), int(b>>52)-1022
+	} else {
+		f1, e = math.Frexp(x)
+	}
 	if f1 < math.Sqrt2/2 {
 		f1 *= 2
 		e--
