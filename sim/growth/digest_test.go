@@ -3,7 +3,9 @@ package growth
 import (
 	"encoding/json"
 	"flag"
+	"fmt"
 	"os"
+	"slices"
 	"testing"
 
 	"preponder/sim/law"
@@ -75,8 +77,44 @@ func TestDigestsArePinned(t *testing.T) {
 	if len(got) != len(want) {
 		t.Errorf("%d cases, %d pinned", len(got), len(want))
 	}
-	// The first is the one pinned since the first version.
-	if got["plain"] != "d8bb7181b7bd9f7ca9d4f6d597d73883ec76e3b4809c7e3d36b1da0b8bfb28f5" {
-		t.Errorf("the plain network of 5,000 members is %s", got["plain"])
+}
+
+// Drawn one by one, side by side and on several processors, networks are the same to the last link, also where they begin
+// from another one or where a lever comes late.
+func TestSideBySide(t *testing.T) {
+	cases := digestCases(t)
+	begun := grow(t, Params{Law: law.Uniform{}, Sharpness: 2, Links: 2, Members: 3000, Seed: 9})
+	for _, p := range []Params{
+		{Law: law.Uniform{}, Sharpness: 2, Links: 1.7, Members: 60000, Seed: 10, Start: &Start{Energy: begun.Energy, Received: begun.Received(3000)}},
+		{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, Members: 120000, Seed: 4}, {Law: law.Power{Theta: 0.3}, Sharpness: 20, Links: 3, HeadStart: 0.7, Members: 90000, Seed: 5},
+		{Law: law.Uniform{}, Sharpness: 1, Links: 1.4, OpenShare: 0.2, Members: 90000, Seed: 6}, {Law: law.Power{Theta: 1}, Sharpness: 60, Links: 64, Members: 5000, Seed: 7},
+		{Law: law.Gamma{Shape: 2, Scale: 1}, Sharpness: 9, Links: 2, Members: 40000, Seed: 8, HeadStart: 3, LeversFrom: 35000},
+	} {
+		cases[fmt.Sprintf("%T %g %g", p.Law, p.Sharpness, p.Links)] = p
+	}
+	for name, p := range cases {
+		alone, err := growBy(p, nil, 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for workers := 1; workers <= 3; workers++ {
+			together, err := growBy(p, nil, workers)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if alone.Digest() != together.Digest() || !slices.Equal(alone.Energy, together.Energy) || !slices.Equal(alone.first, together.first) {
+				t.Errorf("%s: %d workers grow another network than one by one", name, workers)
+			}
+		}
+		if p.Members > 3000 && p.LeversFrom == 0 { // a network holds every smaller one
+			p.Members = 2 * p.Members / 3
+			smaller, err := growBy(p, nil, 2)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if !slices.Equal(smaller.Targets, alone.Targets[:len(smaller.Targets)]) {
+				t.Errorf("%s: the network of %d members is not held by the larger one", name, p.Members)
+			}
+		}
 	}
 }

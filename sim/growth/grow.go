@@ -14,32 +14,36 @@ const (
 // Grow grows the network. step is called now and then with the share done and may end the growth with an error, which
 // Grow returns; it may be nil.
 func Grow(p Params, step func(done float64) error) (*Network, error) {
+	return growBy(p, step, processors())
+}
+
+// growBy is Grow with so many workers; with none newcomers are drawn one by one.
+func growBy(p Params, step func(done float64) error, workers int) (*Network, error) {
 	n := &Network{Params: p, from: 1}
 	defer func() { n.Params = p }()
 	if p.Start != nil {
 		n.from = len(p.Start.Energy)
 	}
-	g := &grower{Network: n, levers: p, own: p.Links + p.HeadStart, key: exact.Key(p.Seed, exact.Links), extra: exact.Key(p.Seed, exact.Extra)}
+	g := &grower{Network: n, levers: p, key: exact.Key(p.Seed, exact.Links), extra: exact.Key(p.Seed, exact.Extra), energies: exact.Key(p.Seed, exact.Energies), workers: workers}
+	g.endow(p.Links + p.HeadStart)
 	if g.LeversFrom > g.from {
 		g.off()
-		g.own = p.Links
+		g.endow(p.Links)
 	}
 	g.makeRoom()
-	energies := exact.Key(p.Seed, exact.Energies)
 	for v := range n.from {
 		if p.Start == nil {
-			g.join(v, exact.Unit(exact.Bits(energies, uint64(v), 0)))
+			g.place(v)
 		} else {
 			n.Energy[v] = p.Start.Energy[v]
-			if p.Start.Rank != nil {
-				n.Rank[v] = p.Start.Rank[v]
-			}
-			g.present(v)
 		}
 	}
+	g.gauge()
 	g.prepare(n.from)
-	for v := n.from; v < p.Members; v++ {
-		if step != nil && v%between == 0 {
+	heard := n.from
+	for v := n.from; v < p.Members; {
+		if step != nil && v-heard >= between {
+			heard = v
 			if err := step(float64(v-n.from) / float64(p.Members-n.from)); err != nil {
 				return nil, err
 			}
@@ -47,10 +51,63 @@ func Grow(p Params, step func(done float64) error) (*Network, error) {
 		if v == p.LeversFrom {
 			g.pullLevers()
 		}
+		if g.swiftly() {
+			to := p.Members
+			if p.LeversFrom > v {
+				to = p.LeversFrom
+			}
+			if next := g.swift(v, to); next > v {
+				v = next
+				continue
+			}
+		}
 		g.newcomer(v)
-		g.join(v, exact.Unit(exact.Bits(energies, uint64(v), 0)))
+		g.join(v)
+		v++
 	}
 	return n, nil
+}
+
+// endow gives every member so many tickets of its own.
+func (g *grower) endow(own float64) {
+	g.own = own
+	g.whole = own == math.Floor(own) && own <= 2*MaxLinks // then all tickets together are a number below 2^32
+}
+
+// mildest is the largest number whose exponential float32 holds.
+const mildest = 85
+
+// gauge chooses the unit of weights, looking at the members there are: the fitness of the best of them, for good, where
+// the law has no one far fitter; else always the best so far.
+func (g *grower) gauge() {
+	for v := range g.from {
+		g.best = math.Min(g.best, g.Energy[v])
+	}
+	g.unit, g.top = g.best, 1
+	low, _ := g.Law.Support()
+	g.mild = g.Sharpness == 0 || float64(g.Sharpness*(g.best-low)) <= mildest
+	if g.mild {
+		g.light = make([]uint16, g.Members)
+	}
+	for v := range g.from {
+		g.present(v)
+	}
+}
+
+// weigh returns the fitness of member v, in the unit of weights.
+func (g *grower) weigh(v int) float64 {
+	return exact.Exp(float64(-g.Sharpness * (g.Energy[v] - g.unit)))
+}
+
+// heavy makes the weights in full, which drawing one by one needs.
+func (g *grower) heavy(v int) {
+	if g.weight != nil {
+		return
+	}
+	g.weight = make([]float64, g.Members)
+	for j := range v {
+		g.weight[j] = g.weigh(j)
+	}
 }
 
 // A grower is a network in the making.
@@ -58,9 +115,15 @@ type grower struct {
 	*Network
 	levers      Params  // as asked for; Network's own are plain until LeversFrom
 	own         float64 // tickets a member has before it receives any
+	whole       bool    // and whether that is a small whole number
 	key, extra  uint64
-	weight      []float64 // fitness relative to the best so far
+	energies    uint64
+	mild        bool      // the unit of weights stays
+	unit        float64   // energy whose fitness is the unit of weights
+	light       []uint16  // weights to three digits, while they are mild
+	weight      []float64 // weights in full; nil while newcomers are drawn side by side
 	best        float64   // energy of the best so far
+	top         float64   // and its weight
 	received    []int32   // kept only where a lever or the tree needs it
 	expired     []int32   // of those, links that count no more; kept with received under expiry
 	live        int       // the first link that counts
@@ -71,6 +134,10 @@ type grower struct {
 	ages        *ages     // under a kernel, fading or idling: then the tree stays
 	untilReject int       // links left before rejection is tried again
 	chosen      []int32   // by the newcomer at hand, for Distinct
+	workers     int
+	lanes       []*lanes
+	starts      []int  // links before each of the newcomers drawn side by side
+	bests       []best // the best member before each of them
 }
 
 // pullLevers puts the levers in force, at the size they were asked for.
@@ -79,7 +146,7 @@ func (g *grower) pullLevers() {
 		return
 	}
 	g.Network.Params = g.levers
-	g.own = g.Links + g.HeadStart
+	g.endow(g.Links + g.HeadStart)
 	g.tree, g.wide = nil, nil
 	g.prepare(g.LeversFrom)
 }
@@ -102,6 +169,7 @@ func (g *grower) prepare(v int) {
 		}
 	}
 	if g.alpha() != 1 || g.Fading > 0 || g.Idling > 0 {
+		g.heavy(v)
 		g.ages = g.newAges(v)
 		g.plant(v)
 	}
@@ -126,8 +194,6 @@ func (g *grower) expire(v int) {
 func (g *grower) makeRoom() {
 	p := g.Params
 	g.Energy = make([]float64, p.Members)
-	g.Rank = make([]float32, p.Members)
-	g.weight = make([]float64, p.Members)
 	g.best = math.Inf(1)
 	whole := p.Links == math.Floor(p.Links) && p.Start == nil && !(g.levers.Distinct && p.LeversFrom > 1)
 	if whole {
@@ -185,36 +251,53 @@ func (g *grower) count() {
 	}
 }
 
-// join gives member v the energy at rank u of the law.
-func (g *grower) join(v int, u float64) {
-	g.Rank[v] = float32(u)
-	g.Energy[v] = g.Law.Quantile(u)
+// join lets member v come.
+func (g *grower) join(v int) {
+	g.place(v)
 	g.present(v)
 }
 
-// present lets member v be chosen from. A new best rescales all weights: that happens about ln N times, and costs N steps
-// in all on average.
+// place gives member v its energy.
+func (g *grower) place(v int) {
+	g.Energy[v] = g.Law.Quantile(exact.Unit(exact.Bits(g.energies, uint64(v), 0)))
+}
+
+// present lets member v be chosen from. Where the unit of weights is the best so far a new best rescales them all: that
+// happens about ln N times, and costs N steps in all on average.
 func (g *grower) present(v int) {
 	e := g.Energy[v]
-	if e < g.best {
-		if !math.IsInf(g.best, 1) && g.Sharpness > 0 {
-			for j := range v {
-				g.weight[j] = exact.Exp(float64(-g.Sharpness * (g.Energy[j] - e)))
-			}
+	if g.mild {
+		w := g.weigh(v)
+		exact.Weights(g.light[v:v+1], g.Energy[v:v+1], g.Sharpness, g.unit)
+		if g.weight != nil {
+			g.weight[v] = w
 		}
-		g.best = e
+		if e < g.best {
+			g.best, g.top = e, w
+		}
+		g.stir(int32(v))
+		return
+	}
+	if g.weight == nil {
+		g.heavy(v)
+	}
+	if e < g.best {
+		g.best, g.unit = e, e
+		for j := range v {
+			g.weight[j] = g.weigh(j)
+		}
 		g.weight[v] = 1
 		if g.tree != nil {
 			g.plant(v + 1)
 		}
 		return
 	}
-	g.weight[v] = exact.Exp(float64(-g.Sharpness * (e - g.best)))
+	g.weight[v] = g.weigh(v)
 	g.stir(int32(v))
 }
 
-// newcomer draws the links of member v and notes them.
-func (g *grower) newcomer(v int) {
+// linksFor returns how many links newcomer v brings.
+func (g *grower) linksFor(v int) int {
 	links := int(g.Links)
 	if part := g.Links - math.Floor(g.Links); part > 0 && exact.Unit(exact.Bits(g.extra, uint64(v), 1)) < part {
 		links++
@@ -222,8 +305,19 @@ func (g *grower) newcomer(v int) {
 	if g.Distinct {
 		links = min(links, v)
 	}
+	return links
+}
+
+// openly tells whether a link is dealt to any member alike.
+func (g *grower) openly(index uint64) bool {
+	return exact.Unit(exact.Bits(g.extra, index, 0)) < g.OpenShare
+}
+
+// newcomer draws the links of member v and notes them.
+func (g *grower) newcomer(v int) {
+	g.heavy(v)
 	before := len(g.Targets)
-	for range links {
+	for range g.linksFor(v) {
 		j := g.draw(v, before)
 		g.chosen = append(g.chosen, j)
 		if g.Distinct {
@@ -276,6 +370,9 @@ func (g *grower) settle(v int) {
 	}
 	if g.untilReject -= len(g.chosen); g.untilReject <= 0 && g.ages == nil {
 		g.tree, g.wide = nil, nil
+		if g.swiftly() {
+			g.weight = nil
+		}
 		if g.Ceiling == 0 && g.LevyRate == 0 {
 			g.received, g.expired = nil, nil
 		}
@@ -370,7 +467,7 @@ func (g *grower) widePull(j int32) wide {
 	if has(g.closed, j) {
 		return wide{}
 	}
-	w := float64(-g.Sharpness*(g.Energy[j]-g.best)) + float64(g.alpha()*exact.Log(g.tickets(j)))
+	w := float64(-g.Sharpness*(g.Energy[j]-g.unit)) + float64(g.alpha()*exact.Log(g.tickets(j)))
 	if g.ages != nil {
 		w += exact.Log(g.bound(j))
 	}
@@ -379,7 +476,7 @@ func (g *grower) widePull(j int32) wide {
 
 // logPull returns the logarithm of the weight of j, its fitness relative to the best.
 func (g *grower) logPull(j int32) float64 {
-	w := float64(-g.Sharpness*(g.Energy[j]-g.best)) + float64(g.alpha()*exact.Log(g.tickets(j)))
+	w := float64(-g.Sharpness*(g.Energy[j]-g.unit)) + float64(g.alpha()*exact.Log(g.tickets(j)))
 	if g.ages != nil {
 		w += g.logAge(j)
 	}
@@ -403,7 +500,7 @@ func (g *grower) barred(j int32) bool {
 // draw returns the member the next link of newcomer v goes to; links is the number made before v came.
 func (g *grower) draw(v, links int) int32 {
 	index := uint64(links + len(g.chosen))
-	if g.OpenShare > 0 && exact.Unit(exact.Bits(g.extra, index, 0)) < g.OpenShare {
+	if g.OpenShare > 0 && g.openly(index) {
 		return g.drawAny(v, index)
 	}
 	if g.tree != nil {
@@ -415,24 +512,13 @@ func (g *grower) draw(v, links int) int32 {
 	plain := len(g.closed) == 0 && !g.Distinct
 	for try := range uint64(tries) {
 		bits := exact.Bits(g.key, index, try)
-		x := float64(exact.Unit(bits) * all)
-		var j int32
-		var w float64
-		if x < own {
-			j = int32(min(int(x/g.own), v-1))
-			w = g.weight[j]
-		} else {
-			j = targets[min(int(x-own), len(targets)-1)]
-			w = g.weight[j]
-			if g.LevyRate > 0 {
-				d := g.counting(j)
-				w = float64(w * (g.left(d) / d))
-			}
+		j := g.holder(bits, v, own, targets)
+		w := g.weight[j]
+		if g.LevyRate > 0 && g.byLink(bits, own, all) {
+			d := g.counting(j)
+			w = float64(w * (g.left(d) / d))
 		}
-		if w < 1 && exact.Unit(exact.Again(bits)) >= w {
-			continue
-		}
-		if plain || !g.barred(j) {
+		if float64(g.chance(bits, all)*g.top) < w && (plain || !g.barred(j)) {
 			return j
 		}
 	}

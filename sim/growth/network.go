@@ -86,7 +86,6 @@ type Start struct {
 type Network struct {
 	Params
 	Energy  []float64 // of each member
-	Rank    []float32 // share of the law that is fitter than it; for a start's members as it says
 	Targets []int32   // of each link, in order
 	first   []int32   // links before member v, where they are no plain multiple; nil otherwise
 	from    int       // members of the start
@@ -120,6 +119,18 @@ func (n *Network) Received(v int) []int32 {
 		d[j]++
 	}
 	return d
+}
+
+// Rank returns the share of the law that is fitter than member j, which decided its energy; for a member of a start what
+// that says, 0 if nothing.
+func (n *Network) Rank(j int) float64 {
+	if j < n.from && n.Start != nil {
+		if n.Start.Rank == nil {
+			return 0
+		}
+		return float64(n.Start.Rank[j])
+	}
+	return exact.Unit(exact.Bits(exact.Key(n.Seed, exact.Energies), uint64(j), 0))
 }
 
 // Digest returns the hex SHA-256 of the targets as little-endian int32.

@@ -27,7 +27,16 @@ func (p Power) Cumulative(eps float64) float64 {
 	return math.Pow(math.Min(eps, 1), p.Theta+1)
 }
 
-func (p Power) Quantile(u float64) float64   { return exact.Pow(u, 1/(p.Theta+1)) }
+func (p Power) Quantile(u float64) float64 {
+	switch p.Theta {
+	case 0:
+		return u
+	case 1:
+		return math.Sqrt(u)
+	}
+	return exact.Pow(u, 1/(p.Theta+1))
+}
+
 func (p Power) Support() (low, high float64) { return 0, 1 }
 func (p Power) Mean() float64                { return (p.Theta + 1) / (p.Theta + 2) }
 func (p Power) Edge() Edge                   { return Edge{Theta: p.Theta, Scale: p.Theta + 1} }

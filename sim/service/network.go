@@ -411,15 +411,16 @@ func columns(n *growth.Network) []wire.Column {
 		sum += math.Exp(-n.Sharpness * (e - least))
 	}
 	shift := math.Log(sum / float64(n.Members))
-	pull := make([]float32, n.Members)
+	pull, rank := make([]float32, n.Members), make([]float32, n.Members)
 	for j, e := range n.Energy {
+		rank[j] = float32(n.Rank(j))
 		pull[j] = float32((-n.Sharpness*(e-least) - shift) / math.Ln10)
 	}
 	before := make([]int32, n.Members+1)
 	for v := range before {
 		before[v] = int32(n.LinksBefore(v))
 	}
-	return []wire.Column{{Name: "targets", Int32: n.Targets}, {Name: "before", Int32: before}, {Name: "rank", Float32: n.Rank}, {Name: "pull", Float32: pull}}
+	return []wire.Column{{Name: "targets", Int32: n.Targets}, {Name: "before", Int32: before}, {Name: "rank", Float32: rank}, {Name: "pull", Float32: pull}}
 }
 
 // Columns returns what there is to draw of the network grown last, and the members it began with; nil before any.
@@ -441,7 +442,7 @@ func counted(n *growth.Network, received []int32) []Counted {
 	bins := make([]bin, len(edges)-1)
 	for j, d := range received {
 		k := 0
-		for k+2 < len(edges) && float64(n.Rank[j]) >= edges[k+1] {
+		for k+2 < len(edges) && n.Rank(j) >= edges[k+1] {
 			k++
 		}
 		b := &bins[k]
@@ -490,6 +491,6 @@ func member(e *Engine, p wire.Packet, _ Step) (reply, error) {
 	}
 	return reply{body: map[string]any{
 		"links": received[ask.Member], "share": float64(received[ask.Member]) / math.Max(1, float64(links)), "rank": rank, "of": ask.Size,
-		"energy": n.Energy[ask.Member], "within": n.Rank[ask.Member], "pull": float64(ask.Size) / mean, "chose": chose, "arrived": ask.Member,
+		"energy": n.Energy[ask.Member], "within": n.Rank(ask.Member), "pull": float64(ask.Size) / mean, "chose": chose, "arrived": ask.Member,
 	}}, nil
 }

@@ -23,6 +23,21 @@ func TestExpLogAgainstStandardLibrary(t *testing.T) {
 	}
 }
 
+func TestWeights(t *testing.T) {
+	eps, w := make([]float64, 100000), make([]uint16, 100000)
+	for i := range eps {
+		eps[i] = 40 * Unit(Bits(9, uint64(i), 0))
+	}
+	Weights(w, eps, 4, 20)
+	for i, e := range eps {
+		want := math.Exp(math.Max(-86, -4*(e-20)))
+		at, next := math.Float32frombits(uint32(w[i])<<16), math.Float32frombits(uint32(w[i])<<16+1<<16)
+		if float64(at) > want*(1-1e-7) || float64(next) < want*(1-5e-7) {
+			t.Fatalf("exp(%g) = %g is said to lie between %g and %g", -4*(e-20), want, at, next)
+		}
+	}
+}
+
 func TestSpecialAgainstGonum(t *testing.T) {
 	for i := range uint64(3000) {
 		a, b := math.Exp(6*Unit(Bits(3, i, 0))-3), math.Exp(6*Unit(Bits(4, i, 0))-3)

@@ -11,9 +11,51 @@ const (
 	log2E   = 1.44269504088896338700e+00
 )
 
-// Exp returns e^x, error below 1 ulp. Argument reduction x = k ln 2 + r, |r| <= ln(2)/2, then the rational
-// approximation of FDLIBM e_exp.c (Sun Microsystems 1993; coefficients by Remez).
+// roots[j] is 2^(j/64), to the nearest float64.
+var roots = [64]float64{
+	1.0, 1.0108892860517005, 1.0218971486541166, 1.0330248790212284, 1.0442737824274138, 1.0556451783605572, 1.0671404006768237, 1.0787607977571199,
+	1.0905077326652577, 1.102382583307841, 1.1143867425958924, 1.1265216186082418, 1.1387886347566916, 1.1511892299529827, 1.1637248587775775, 1.1763969916502812,
+	1.189207115002721, 1.202156731452703, 1.215247359980469, 1.22848053610687, 1.241857812073484, 1.255380757024691, 1.2690509571917332, 1.2828700160787783,
+	1.2968395546510096, 1.3109612115247644, 1.3252366431597413, 1.339667524053303, 1.3542555469368927, 1.3690024229745905, 1.383909881963832, 1.3989796725383112,
+	1.4142135623730951, 1.42961333839197, 1.4451808069770467, 1.460917794180647, 1.4768261459394993, 1.4929077282912648, 1.5091644275934228, 1.5255981507445384,
+	1.5422108254079407, 1.559004400237837, 1.5759808451078865, 1.593142151342267, 1.6104903319492543, 1.6280274218573478, 1.645755478153965, 1.6636765803267364,
+	1.681792830507429, 1.7001063537185235, 1.718619298122478, 1.7373338352737062, 1.7562521603732995, 1.7753764925265212, 1.7947090750031072, 1.8142521755003989,
+	1.8340080864093424, 1.8539791250833855, 1.8741676341103, 1.8945759815869656, 1.9152065613971474, 1.9360617934922943, 1.9571441241754002, 1.978456026387951,
+}
+
+// Exp returns e^x, error below 1 ulp: x = n ln(2)/64 + r, |r| <= ln(2)/128, then the Taylor series of e^r and a table of
+// 2^(n/64) (Tang, ACM Trans. Math. Softw. 15, 144, 1989).
 func Exp(x float64) float64 {
+	if !(x > -700 && x < 700) {
+		return farExp(x)
+	}
+	n := math.Floor(float64(x*(64*log2E)) + 0.5)
+	r := (x - float64(n*(ln2High/64))) - float64(n*(ln2Low/64))
+	p := float64(r*(1.0/120)) + 1.0/24
+	p = float64(r*p) + 1.0/6
+	p = float64(r*p) + 0.5
+	p = float64(float64(r*r)*p) + r
+	k := int64(n)
+	t := roots[k&63]
+	return (t + float64(t*p)) * math.Float64frombits(uint64(k>>6+1023)<<52)
+}
+
+// Weights sets w to the upper half of exp(-beta (eps - unit)) as a float32, rounded down, for exponents up to 88; what lies
+// below exp(-86) becomes that. Before it is rounded the value is right to 4e-7, from below.
+func Weights(w []uint16, eps []float64, beta, unit float64) {
+	for i, e := range eps[:len(w)] {
+		x := max(beta*(unit-e), -86)
+		n := math.Floor(x*(64*log2E) + 0.5)
+		r := x - n*(math.Ln2/64)
+		p := r + r*r*(0.5+r*(1.0/6))
+		k := int64(n)
+		t := roots[k&63] * (1 - 2e-7)
+		w[i] = uint16(math.Float32bits(float32((t+t*p)*math.Float64frombits(uint64(k>>6+1023)<<52))) >> 16)
+	}
+}
+
+// farExp is Exp where the result is near the ends of the range, or past them.
+func farExp(x float64) float64 {
 	switch {
 	case math.IsNaN(x) || math.IsInf(x, 1):
 		return x
@@ -21,24 +63,9 @@ func Exp(x float64) float64 {
 		return math.Inf(1)
 	case x < -745.2:
 		return 0
-	case math.Abs(x) < 1.0/(1<<28):
-		return 1 + x
 	}
-	k := int(math.Floor(float64(log2E*x) + 0.5))
-	hi := x - float64(float64(k)*ln2High)
-	lo := float64(float64(k) * ln2Low)
-	r := hi - lo
-	t := float64(r * r)
-	c := float64(t*4.13813679705723846039e-08) - 1.65339022054652515390e-06
-	c = float64(t*c) + 6.61375632143793436117e-05
-	c = float64(t*c) - 2.77777777770155933842e-03
-	c = float64(t*c) + 1.66666666666666019037e-01
-	c = r - float64(t*c)
-	y := 1 - ((lo - float64(r*c)/(2-c)) - hi)
-	if k < -1020 || k > 1020 {
-		return math.Ldexp(y, k)
-	}
-	return y * math.Float64frombits(uint64(k+1023)<<52)
+	half := Exp(x / 2)
+	return float64(half * half)
 }
 
 // Log returns ln x, error below 1 ulp: x = 2^k f, sqrt(1/2) < f < sqrt(2), then the series of FDLIBM e_log.c in

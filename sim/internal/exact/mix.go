@@ -20,8 +20,11 @@ func Key(seed uint32, s Stream) uint64 {
 // Bits returns the 64 bits that belong to (key, index, try): a keyed draw, not a stream, so link k keeps its chance when
 // anything before it changes. Two multiplications, xor-shifts between.
 func Bits(key, index, try uint64) uint64 {
-	return mix(key + index*0x9E3779B97F4A7C15 + try*0xA0761D6478BD642F)
+	return mix(Try(key, try) + index*0x9E3779B97F4A7C15)
 }
+
+// Try returns the key that stands for (key, try): Bits(Try(key, try), index, 0) = Bits(key, index, try).
+func Try(key, try uint64) uint64 { return key + try*0xA0761D6478BD642F }
 
 // Again returns a second, independent 64 bits from the first.
 func Again(bits uint64) uint64 { return mix(bits ^ 0xC2B2AE3D27D4EB4F) }
