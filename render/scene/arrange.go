@@ -84,7 +84,8 @@ func (l *layout) wash(p *Picture) {
 		m = max(1, float64(l.links)/float64(l.n-1))
 	}
 	for j, d := range l.received {
-		k := min(int(math.Hypot(float64(l.at[j].x), float64(l.at[j].y))*washRings), washRings-1)
+		p := l.at[j]
+		k := min(int(math.Sqrt(float64(p.x*p.x+p.y*p.y))*washRings), washRings-1)
 		links[k] += float64(d)
 		members[k]++
 	}

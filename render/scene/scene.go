@@ -89,13 +89,46 @@ var RingShares = []float64{0.0001, 0.001, 0.01, 0.1, 0.5}
 // Radius returns r/R for q in [0, 1].
 func Radius(q float64) float64 { return math.Sqrt(0.7*q + 0.3*math.Pow(q, 0.35)) }
 
+// ranked are the radii of members by their ranks, which stay while anything but the seed changes.
+var ranked struct{ rank, radius []float32 }
+
+// radii returns Radius of each rank.
+func radii(rank []float32) []float32 {
+	same := 0
+	for same < min(len(rank), len(ranked.rank)) && rank[same] == ranked.rank[same] {
+		same++
+	}
+	if same < len(rank) {
+		ranked.rank, ranked.radius = append(ranked.rank[:same], rank[same:]...), ranked.radius[:same]
+		for _, q := range rank[same:] {
+			ranked.radius = append(ranked.radius, float32(Radius(float64(q))))
+		}
+	}
+	return ranked.radius[:len(rank)]
+}
+
 // golden is the angle between members one after another.
 var golden = math.Pi * (3 - math.Sqrt(5))
 
 // Tone returns the place on the colour ramp of a pull, given as log10 over the mean.
 func Tone(pull float64) float64 {
-	return max(0, min(1, 0.56-math.Copysign(0.37*math.Pow(math.Abs(pull), 0.6), pull)))
+	x := (pull + toneReach) * (toneSteps / (2 * toneReach))
+	if !(x > 0) {
+		return 1
+	}
+	return tones[min(int(x+0.5), toneSteps)]
 }
+
+// tones of pulls from -toneReach to toneReach, at whose ends the ramp has ended.
+const toneReach, toneSteps = 2.5, 4096
+
+var tones = func() (t [toneSteps + 1]float64) {
+	for i := range t {
+		pull := 2*toneReach*float64(i)/toneSteps - toneReach
+		t[i] = max(0, min(1, 0.56-math.Copysign(0.37*math.Pow(math.Abs(pull), 0.6), pull)))
+	}
+	return t
+}()
 
 // A layout places members for one view.
 type layout struct {
@@ -104,7 +137,8 @@ type layout struct {
 	n        int
 	links    int
 	received []int32
-	at       []spot // of every member, in radii of the disc from its middle
+	radii    []float32 // of the levels
+	at       []spot    // of every member, in radii of the disc from its middle
 	cx, cy   float64
 	r        float64 // radius of the disc with zoom
 	dot      float64 // radius a share of 1 would have
@@ -115,7 +149,7 @@ type spot struct{ x, y float32 }
 
 func newLayout(c Columns, v View) *layout {
 	n := max(0, min(v.Members, c.Members()))
-	l := &layout{c: c, v: v, n: n, top: -1, received: make([]int32, n), at: make([]spot, n)}
+	l := &layout{c: c, v: v, n: n, top: -1, received: make([]int32, n), at: make([]spot, n), radii: radii(c.Rank[:n])}
 	if n > 0 {
 		l.links = int(c.Before[n])
 	}
@@ -191,7 +225,7 @@ func (l *layout) out(j int32) float64 {
 	a := l.v.Arrival
 	r := 0.0
 	if a < 1 {
-		r = (1 - a) * Radius(float64(l.c.Rank[j]))
+		r = (1 - a) * float64(l.radii[j])
 	}
 	if a > 0 {
 		r += a * Radius((float64(j)+0.5)/float64(l.n))

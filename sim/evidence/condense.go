@@ -112,7 +112,7 @@ func Condense(l *Rows, s *Study, label string) *Condensed {
 	}
 	c.Check = s.check(c.Notes)
 	c.keepMembers(s, received)
-	path := share.Along(h.Target, h.Before, min(10, h.Members()), h.Members(), pathPoints, nil, nil)
+	path := share.Along(h.Target, h.Before, min(10, h.Members()), h.Members(), pathPoints, nil)
 	c.Track = Track{path.Members, rounds(path.Share, 4), rounds(path.Top4, 4), rounds(path.HHI, 0)}
 	return c
 }

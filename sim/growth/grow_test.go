@@ -497,3 +497,16 @@ func BenchmarkGrow(b *testing.B) {
 		}
 	}
 }
+
+func TestBetaMuAlong(t *testing.T) {
+	begun := grow(t, Params{Law: law.Uniform{}, Sharpness: 2, Links: 2, Members: 300, Seed: 9})
+	for _, p := range []Params{{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, HeadStart: 1, Members: 900, Seed: 2},
+		{Law: law.Uniform{}, Sharpness: 2, Links: 1.7, Members: 900, Seed: 3, Start: &Start{Energy: begun.Energy, Received: begun.Received(300)}}} {
+		n := grow(t, p)
+		z := n.Pulls()
+		sizes := []int32{300, 301, 420, 900}
+		for i, got := range z.Along(sizes) {
+			near.Abs(t, "beta mu", got, z.BetaMu(n.Received(int(sizes[i]))), 1e-11)
+		}
+	}
+}

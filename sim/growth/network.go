@@ -171,11 +171,47 @@ func (n *Network) Pulls() Pulls {
 	return p
 }
 
+// LogMean returns the logarithm of the mean fitness of the members.
+func (p Pulls) LogMean() float64 {
+	sum := 0.0
+	for _, f := range p.eta {
+		sum += f
+	}
+	return math.Log(sum/float64(len(p.eta))) - p.n.Sharpness*p.least
+}
+
+// Along returns BetaMu at these sizes, ascending, none below From.
+func (p Pulls) Along(sizes []int32) []float64 {
+	n, z, v := p.n, 0.0, 0
+	own := n.Links + n.HeadStart
+	out := make([]float64, 0, len(sizes))
+	for _, size := range sizes {
+		from := n.LinksBefore(v)
+		if v == 0 {
+			from = 0
+		}
+		for ; v < int(size); v++ {
+			z += p.eta[v] * own
+		}
+		for _, j := range n.Targets[from:n.LinksBefore(v)] {
+			z += p.eta[j]
+		}
+		out = append(out, p.of(z, v))
+	}
+	return out
+}
+
+// of returns beta mu where the pulls of v members sum to z.
+func (p Pulls) of(z float64, v int) float64 {
+	n := p.n
+	return n.Sharpness*p.least - math.Log(z/(float64(v)*n.Links*(1-n.OpenShare)))
+}
+
 // BetaMu is the network's BetaMu when its first members had received so many links.
 func (p Pulls) BetaMu(received []int32) float64 {
 	n, z := p.n, 0.0
 	for j, d := range received {
 		z += p.eta[j] * (n.Links + n.HeadStart + float64(d))
 	}
-	return n.Sharpness*p.least - math.Log(z/(float64(len(received))*n.Links*(1-n.OpenShare)))
+	return p.of(z, len(received))
 }

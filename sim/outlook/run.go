@@ -102,7 +102,7 @@ func (p Plan) run(k int, base *growth.Start, leader int, at []int32, step func(f
 	if err != nil {
 		return Run{}, err
 	}
-	path := share.Along(n.Targets, n.LinksBefore, int(at[0]), p.Horizon, len(at), []int32{int32(leader)}, nil)
+	path := share.Along(n.Targets, n.LinksBefore, int(at[0]), p.Horizon, len(at), []int32{int32(leader)})
 	last := len(path.Members) - 1
 	return Run{Number: k, Share: path.Share, Top4: path.Top4[last], HHI: path.HHI[last], Same: int(path.Leader[last]) == leader, Leader: path.Followed[0][last]}, nil
 }

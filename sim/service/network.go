@@ -346,19 +346,7 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 	e.network, e.received, e.name = n, received, name
 	out := Grown{Members: n.Members, From: n.From(), Links: len(n.Targets), Top4: s.Top4, HHI: s.HHI, Gini: s.Gini, BetaMu: wire.Num(betaMu), MuAtSize: wire.Num(betaMu / n.Sharpness),
 		Leader: Leader{name(s.Leader), s.Share, n.Energy[s.Leader], math.Exp(-n.Sharpness * n.Energy[s.Leader]), s.Leader}}
-	full := Path{}
-	along := func(received []int32) {
-		full.Gini = append(full.Gini, share.Gini(received))
-		mu := math.NaN()
-		if covered {
-			mu = z.BetaMu(received)
-		}
-		full.BetaMu = append(full.BetaMu, wire.Num(mu))
-	}
-	if !ask.Columns {
-		along = nil
-	}
-	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))], along)
+	path := share.Along(n.Targets, n.LinksBefore, n.From(), n.Members, pathPoints, s.Ranking[:min(followed, len(s.Ranking))])
 	out.LeadChanges = path.LeadChanges()
 	if ask.Digest {
 		out.Digest = n.Digest()
@@ -369,15 +357,20 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 			out.Ranking = append(out.Ranking, Standing{name(int(j)), j, float64(received[j]) / float64(s.Links), n.Energy[j]})
 		}
 		out.Reigns = path.Reigns
-		full.Members, full.Leader, full.Share, full.Top4, full.HHI, full.Followed = path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Followed
-		out.Path = &full
+		full := Path{path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Gini, make([]wire.Num, len(path.Members)), path.Followed}
+		for i := range full.BetaMu {
+			full.BetaMu[i] = wire.Num(math.NaN())
+		}
+		if covered {
+			full.BetaMu = wire.Nums(z.Along(path.Members))
+		}
 		t := share.TailOf(received, tailPoints)
 		out.Tail = &Tail{t.Links, t.Share}
 		out.Counted = []Counted{}
 		if covered {
 			out.Counted = counted(n, received)
 		}
-		r.columns = append(columns(n), full.columns()...)
+		r.columns = append(columns(n, z), full.columns()...)
 		out.Path = &Path{}
 	}
 	r.body = out
@@ -401,20 +394,12 @@ func namer(c casebook.Casebook, from int) func(j int) string {
 
 // columns are what the stage draws: targets, rank in the law, log10 of the pull over its mean; links before each member
 // where they are no plain multiple.
-func columns(n *growth.Network) []wire.Column {
-	least := math.Inf(1)
-	for _, e := range n.Energy {
-		least = math.Min(least, e)
-	}
-	sum := 0.0
-	for _, e := range n.Energy {
-		sum += math.Exp(-n.Sharpness * (e - least))
-	}
-	shift := math.Log(sum / float64(n.Members))
+func columns(n *growth.Network, z growth.Pulls) []wire.Column {
+	shift := -z.LogMean()
 	pull, rank := make([]float32, n.Members), make([]float32, n.Members)
 	for j, e := range n.Energy {
 		rank[j] = float32(n.Rank(j))
-		pull[j] = float32((-n.Sharpness*(e-least) - shift) / math.Ln10)
+		pull[j] = float32((shift - n.Sharpness*e) / math.Ln10)
 	}
 	before := make([]int32, n.Members+1)
 	for v := range before {
@@ -428,7 +413,7 @@ func (e *Engine) Columns() ([]wire.Column, int) {
 	if e.network == nil {
 		return nil, 0
 	}
-	return columns(e.network), e.network.From()
+	return columns(e.network, e.network.Pulls()), e.network.From()
 }
 
 // edges of the bins in which links are counted: shares of the law from the fittest on.

@@ -2,6 +2,7 @@ package share
 
 import (
 	"math"
+	"slices"
 	"sort"
 )
 
@@ -15,6 +16,7 @@ type Path struct {
 	Share    []float64
 	Top4     []float64
 	HHI      []float64
+	Gini     []float64
 	Reigns   []Reign
 	Followed [][]float64 // shares of the members asked for, along Members
 }
@@ -29,11 +31,10 @@ type Reign struct {
 func (p Path) LeadChanges() int { return max(0, len(p.Reigns)-1) }
 
 // Along follows the targets, in order, of a network of the given members; before(v) is the number of links made before
-// member v came. It starts at size from. follow names members whose own shares are wanted. each, if not nil, is called at
-// every size noted with the links each member has received by then.
-func Along(targets []int32, before func(v int) int, from, members, points int, follow []int32, each func(received []int32)) Path {
+// member v came. It starts at size from. follow names members whose own shares are wanted.
+func Along(targets []int32, before func(v int) int, from, members, points int, follow []int32) Path {
 	var p Path
-	t := tally{received: make([]int32, members)}
+	t := tally{received: make([]int32, members), having: make([]int32, crowd)}
 	for _, j := range targets[:before(from)] {
 		t.add(j)
 	}
@@ -50,9 +51,6 @@ func Along(targets []int32, before func(v int) int, from, members, points int, f
 		}
 		for next < len(sizes) && int(sizes[next]) == v {
 			p.note(&t, v, follow)
-			if each != nil && t.links > 0 {
-				each(t.received[:v])
-			}
 			next++
 		}
 	}
@@ -74,6 +72,7 @@ func (p *Path) note(t *tally, v int, follow []int32) {
 	}
 	p.Top4 = append(p.Top4, top/l)
 	p.HHI = append(p.HHI, 1e4*t.square/(l*l))
+	p.Gini = append(p.Gini, t.gini(v))
 	for i, j := range follow {
 		p.Followed[i] = append(p.Followed[i], float64(t.received[j])/l)
 	}
@@ -112,13 +111,42 @@ func Lasting(reigns []Reign, members int) []Reign {
 	return out
 }
 
-// A tally counts links as they come: the top four and the sum of squares are kept up to date at every link.
+// crowd is up to how many links members are counted by their number of links.
+const crowd = 1024
+
+// A tally counts links as they come: the top four, the sum of squares and how many members hold how many are kept up to
+// date at every link.
 type tally struct {
 	received []int32
 	links    int
 	square   float64
 	top      [4]int32
 	filled   int
+	having   []int32 // members with so many links, from 1 on
+	far      []int32 // members with crowd links or more
+}
+
+// gini returns the Gini coefficient of the first v members, as Gini does.
+func (t *tally) gini(v int) float64 {
+	sum := gathered{members: float64(v)}
+	most := min(int(t.received[t.leader()])+1, crowd)
+	none := v - len(t.far)
+	for _, c := range t.having[1:most] {
+		none -= int(c)
+	}
+	sum.add(float64(none), 0)
+	for d, c := range t.having[1:most] {
+		sum.add(float64(c), float64(d+1))
+	}
+	above := make([]int32, len(t.far))
+	for i, j := range t.far {
+		above[i] = t.received[j]
+	}
+	slices.Sort(above)
+	for _, d := range above {
+		sum.add(1, float64(d))
+	}
+	return sum.gini()
 }
 
 func (t *tally) leader() int32 { return t.top[0] }
@@ -128,6 +156,14 @@ func (t *tally) add(j int32) {
 	t.square += float64(2*d + 1)
 	t.received[j] = d + 1
 	t.links++
+	if d < crowd {
+		t.having[d]--
+		if d+1 < crowd {
+			t.having[d+1]++
+		} else {
+			t.far = append(t.far, j)
+		}
+	}
 	at := 0
 	for at < t.filled && t.top[at] != j {
 		at++

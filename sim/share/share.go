@@ -83,20 +83,29 @@ func Gini(values []int32) float64 {
 		}
 	}
 	slices.Sort(far)
-	n, sum, weighted, rank := float64(len(values)), 0.0, 0.0, 0.0
+	sum := gathered{members: float64(len(values))}
 	for d, c := range count {
-		cf, df := float64(c), float64(d)
-		weighted += df * (cf*rank + cf*(cf+1)/2)
-		rank += cf
-		sum += cf * df
+		sum.add(float64(c), float64(d))
 	}
 	for _, d := range far {
-		rank++
-		weighted += rank * float64(d)
-		sum += float64(d)
+		sum.add(1, float64(d))
 	}
-	if sum == 0 {
+	return sum.gini()
+}
+
+// gathered is what of a Gini coefficient has been summed, values ascending.
+type gathered struct{ members, sum, weighted, rank float64 }
+
+// add takes in so many equal values.
+func (g *gathered) add(count, value float64) {
+	g.weighted += value * (count*g.rank + count*(count+1)/2)
+	g.rank += count
+	g.sum += count * value
+}
+
+func (g *gathered) gini() float64 {
+	if g.sum == 0 {
 		return 0
 	}
-	return 2*weighted/(n*sum) - (n+1)/n
+	return 2*g.weighted/(g.members*g.sum) - (g.members+1)/g.members
 }

@@ -31,8 +31,7 @@ func TestAlongAgainstRecount(t *testing.T) {
 		targets[i] = int32(float64(v) * math.Pow(r.Float64(), 3))
 	}
 	before := func(v int) int { return 2 * max(v-1, 0) }
-	var seen []float64
-	p := Along(targets, before, 1, 301, 60, []int32{0}, func(received []int32) { seen = append(seen, Gini(received)) })
+	p := Along(targets, before, 1, 301, 60, []int32{0})
 	for i, v := range p.Members {
 		d := make([]int32, v)
 		for _, j := range targets[:before(int(v))] {
@@ -42,6 +41,7 @@ func TestAlongAgainstRecount(t *testing.T) {
 		near.Abs(t, "share", p.Share[i], s.Share, 1e-12)
 		near.Abs(t, "top4", p.Top4[i], s.Top4, 1e-12)
 		near.Abs(t, "hhi", p.HHI[i], s.HHI, 1e-7)
+		near.Abs(t, "gini", p.Gini[i], s.Gini, 1e-12)
 		near.Abs(t, "followed", p.Followed[0][i], float64(d[0])/float64(s.Links), 1e-12)
 	}
 }
@@ -60,28 +60,24 @@ func TestLastingReigns(t *testing.T) {
 	}
 }
 
-func TestEachAndTail(t *testing.T) {
-	targets := []int32{0, 0, 0, 1, 0, 2, 1, 0}
-	before := func(v int) int { return max(0, v-1) }
-	var sums []int
-	p := Along(targets, before, 1, 9, 9, nil, func(received []int32) {
-		sum := 0
-		for _, d := range received {
-			sum += int(d)
-		}
-		sums = append(sums, sum)
-		if got, want := Gini(received), Of(received).Gini; got != want {
-			t.Errorf("Gini %g, %g", got, want)
-		}
-	})
-	for i, n := range p.Members { // n members have made n-1 links
-		if sums[i] != int(n)-1 {
-			t.Errorf("%d links at %d members", sums[i], n)
-		}
+// One member that outgrows the crowd, among many.
+func TestGiniAlong(t *testing.T) {
+	var targets []int32
+	for v := 1; v < 6000; v++ {
+		targets = append(targets, int32(v/3), 0)
 	}
-	if len(sums) != len(p.Members) || len(sums) < 5 {
-		t.Errorf("%d sizes, %d notes", len(p.Members), len(sums))
+	before := func(v int) int { return 2 * max(v-1, 0) }
+	p := Along(targets, before, 1, 6000, 40, nil)
+	for i, v := range p.Members {
+		d := make([]int32, v)
+		for _, j := range targets[:before(int(v))] {
+			d[j]++
+		}
+		near.Abs(t, "gini", p.Gini[i], Gini(d), 1e-12)
 	}
+}
+
+func TestTail(t *testing.T) {
 	tail := TailOf([]int32{5, 2, 1, 0, 0}, 10)
 	want := map[int32]float64{1: .6, 2: .4, 3: .2, 4: .2, 5: .2}
 	for i, k := range tail.Links {
