@@ -28,11 +28,11 @@ func star(n int) scene.Columns {
 	return c
 }
 
-// What a frame costs while something is dragged (1,800 strokes) and at leisure (6,000).
+// What a frame costs while something is dragged (1,200 strokes) and at leisure (6,000).
 func BenchmarkFrame(b *testing.B) {
 	for _, n := range []int{1000, 5000, 20000} {
 		c := star(n)
-		for _, strokes := range []int{1800, 6000} {
+		for _, strokes := range []int{1200, 6000} {
 			v := scene.View{Width: 955, Height: 700, Scale: 1, Members: n, Strokes: strokes, Following: -1, Zoom: 1}
 			p := scene.Arrange(c, v)
 			b.Run(fmt.Sprintf("arrange/%d/%d", n, strokes), func(b *testing.B) {

@@ -143,8 +143,18 @@ func (c *Canvas) grain(p scene.Picture, t Theme) {
 	if density > 0.35 {
 		g = 1.1 * math.Pow(0.35/density, 0.8)
 	}
+	// Tones and weights in steps: a crowd is many members and few shades.
+	const shades, weights, heaviest = 64, 32, 2
+	var tone [shades + 1]Colour
+	for i := range tone {
+		tone[i] = t.At(float64(i) / shades)
+	}
+	var cover [weights + 1]float64
+	for i := range cover {
+		cover[i] = t.grain * (1 - math.Exp(-g*heaviest*float64(i)/weights))
+	}
 	for _, m := range p.Grain {
-		c.blend(int(m.X), int(m.Y), t.At(m.Tone), t.grain*(1-math.Exp(-g*m.Weight)))
+		c.blend(int(m.X), int(m.Y), tone[int(m.Tone*shades+0.5)], cover[min(int(m.Weight*(weights/heaviest)+0.5), weights)])
 	}
 }
 
@@ -192,24 +202,31 @@ func (c *Canvas) Line(x0, y0, x1, y1, w0, w1 float64, col Colour, alpha float64)
 	slope := (y1 - y0) / dx
 	lean := math.Sqrt(1+slope*slope) / 2 // half the width along the shorter axis
 	taper := (w1 - w0) / dx * lean
-	half := w0 * lean
 	first, last := max(0, int(x0)), min(end-1, int(x1))
 	redBlue, green := uint32(col[0])|uint32(col[2])<<16, uint32(col[1])
 	top := int64(far) << 16
 	full := 256 * alpha
+	// Both edges at the middle of the first column, and how far they move from one to the next, in 2^-32 of a pixel.
+	const unit = 1 << 32
+	at := float64(first) + 0.5 - x0
+	low, lower := int64(unit*(y0-w0*lean+(slope-taper)*at)), int64(unit*(slope-taper))
+	high, higher := int64(unit*(y0+w0*lean+(slope+taper)*at)), int64(unit*(slope+taper))
+	pix, whole := c.pix, int64(full)
 	for i := first; i <= last; i++ {
-		at, cover := float64(i)+0.5-x0, full
+		a, from, to := whole, low>>16, high>>16
+		low, high = low+lower, high+higher
 		if i == first || i == last {
-			from, to := max(float64(i), x0), min(float64(i+1), x1)
-			at, cover = (from+to)/2-x0, (to-from)*full
+			left, right := max(float64(i), x0), min(float64(i+1), x1)
+			a = int64((right - left) * full)
+			at := (left+right)/2 - x0
+			y, h := y0+slope*at, w0*lean+taper*at
+			from, to = int64(65536*(y-h)), int64(65536*(y+h))
 		}
-		a := int64(cover)
-		y, h := y0+slope*at, half+taper*at
-		low, high := max(0, int64(65536*(y-h))), min(top, int64(65536*(y+h)))
-		o := int(low>>16)*across + i*along
-		for k := low &^ 0xffff; k < high; k += 1 << 16 {
-			part := uint32((min(k+1<<16, high) - max(k, low)) * a >> 16)
-			c.pix[o] = over(c.pix[o], redBlue, green, part)
+		from, to = max(0, from), min(top, to)
+		o := int(from>>16)*across + i*along
+		for k := from &^ 0xffff; k < to; k += 1 << 16 {
+			part := uint32((min(k+1<<16, to) - max(k, from)) * a >> 16)
+			pix[o] = over(pix[o], redBlue, green, part)
 			o += across
 		}
 	}

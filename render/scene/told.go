@@ -1,7 +1,7 @@
 package scene
 
 // Budgets of strokes: at leisure, on a phone, and while something moves.
-const Full, Small, Quick = 6000, 2500, 1800
+const Full, Small, Quick = 6000, 2500, 1200
 
 // Shot says how a picture was painted elsewhere, and what there is to tell of it.
 type Shot struct {

@@ -419,6 +419,20 @@ func (e *Engine) Columns() ([]wire.Column, int) {
 // edges of the bins in which links are counted: shares of the law from the fittest on.
 var edges = []float64{0, .001, .003, .01, .02, .04, .07, .11, .16, .22, .3, .4, .5, .6, .7, .8, .9, 1}
 
+// binFrom is the bin of every thousandth, of which the edges are whole multiples.
+var binFrom = func() (b [1001]uint8) {
+	k := 0
+	for i := range b {
+		for k+2 < len(edges) && float64(i) >= 1000*edges[k+1]-0.5 {
+			k++
+		}
+		b[i] = uint8(k)
+	}
+	return b
+}()
+
+func binOf(rank float64) int { return int(binFrom[int(1000*rank)]) }
+
 // counted returns the occupation of each bin of energy,
 //
 //	n = (mean links received - m r) / (m (1 + r) + a).
@@ -426,11 +440,7 @@ func counted(n *growth.Network, received []int32) []Counted {
 	type bin struct{ members, links, square, eps float64 }
 	bins := make([]bin, len(edges)-1)
 	for j, d := range received {
-		k := 0
-		for k+2 < len(edges) && n.Rank(j) >= edges[k+1] {
-			k++
-		}
-		b := &bins[k]
+		b := &bins[binOf(n.Rank(j))]
 		b.members++
 		b.links += float64(d)
 		b.square += float64(d) * float64(d)
