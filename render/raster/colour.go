@@ -2,8 +2,6 @@
 // entry marks and pages without WebGL.
 package raster
 
-import "math"
-
 // A Colour is red, green, blue in 0..255.
 type Colour [3]float64
 
@@ -46,7 +44,12 @@ func Named(name string) Theme {
 
 // At returns the colour of a tone in [0, 1].
 func (t Theme) At(tone float64) Colour {
-	x := math.Max(0, math.Min(1, tone)) * 8
+	x := 8 * tone // by hand: math.Max and max are slow in WebAssembly
+	if !(x > 0) {
+		x = 0
+	} else if x > 8 {
+		x = 8
+	}
 	i := min(int(x), 7)
 	f := x - float64(i)
 	a, b := t.Ramp[i], t.Ramp[i+1]

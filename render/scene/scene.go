@@ -260,7 +260,10 @@ func (l *layout) radius(j int32) float64 {
 	if l.v.Bare {
 		floor = 0.8
 	}
-	return max(floor*l.v.Scale, l.dot*math.Sqrt(l.share(j)))
+	if r := l.dot * math.Sqrt(l.share(j)); r > floor*l.v.Scale {
+		return r
+	}
+	return floor * l.v.Scale
 }
 
 // hash is a small mixer for choices that must not beat against the golden angle.

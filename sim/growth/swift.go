@@ -7,6 +7,7 @@ import (
 	"sync"
 
 	"preponder/sim/internal/exact"
+	"preponder/sim/law"
 )
 
 // Under the plain rule, with or without a head start and an open share, the links of many newcomers are drawn side by side:
@@ -131,9 +132,11 @@ type best struct{ energy, weight float64 }
 // arrive gives newcomers their energies and weights, and notes who was best before each.
 func (g *grower) arrive(from, to, workers int) {
 	each(workers, from, to, func(_, from, to int) {
-		for u := from; u < to; u++ {
-			g.place(u)
+		rank := g.Energy[from:to]
+		for i := range rank {
+			rank[i] = exact.Unit(exact.Bits(g.energies, uint64(from+i), 0))
 		}
+		law.Quantiles(g.Law, rank)
 		exact.Weights(g.light[from:to], g.Energy[from:to], g.Sharpness, g.unit)
 	})
 	now := best{g.best, g.top}

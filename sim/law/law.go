@@ -3,6 +3,8 @@
 // An energy eps >= 0 belongs to every member; its fitness is exp(-sharpness*eps). The ground level is eps = 0.
 package law
 
+import "math"
+
 // A Law is a distribution of energies.
 type Law interface {
 	// Density returns p(eps), 0 outside the support. Laws of levels return 0 everywhere and implement Leveled.
@@ -34,4 +36,17 @@ type Leveled interface {
 // An Often is a law whose density is asked for often: Densities returns its Density with everything computed once that does not depend on the energy.
 type Often interface {
 	Densities() func(eps float64) float64
+}
+
+// Quantiles replaces each share by its Quantile.
+func Quantiles(l Law, u []float64) {
+	if p, ok := l.(Power); ok && p.Theta == 1 { // without a call for each
+		for i, x := range u {
+			u[i] = math.Sqrt(x)
+		}
+		return
+	}
+	for i, x := range u {
+		u[i] = l.Quantile(x)
+	}
 }

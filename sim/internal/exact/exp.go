@@ -23,34 +23,42 @@ var roots = [64]float64{
 	1.8340080864093424, 1.8539791250833855, 1.8741676341103, 1.8945759815869656, 1.9152065613971474, 1.9360617934922943, 1.9571441241754002, 1.978456026387951,
 }
 
+// shift added to a small number rounds it to a whole one, which then stands in the last bits of the sum.
+const shift = 3 << 51
+
 // Exp returns e^x, error below 1 ulp: x = n ln(2)/64 + r, |r| <= ln(2)/128, then the Taylor series of e^r and a table of
 // 2^(n/64) (Tang, ACM Trans. Math. Softw. 15, 144, 1989).
 func Exp(x float64) float64 {
 	if !(x > -700 && x < 700) {
 		return farExp(x)
 	}
-	n := math.Floor(float64(x*(64*log2E)) + 0.5)
+	shifted := float64(x*(64*log2E)) + shift
+	n := shifted - shift
 	r := (x - float64(n*(ln2High/64))) - float64(n*(ln2Low/64))
 	p := float64(r*(1.0/120)) + 1.0/24
 	p = float64(r*p) + 1.0/6
 	p = float64(r*p) + 0.5
 	p = float64(float64(r*r)*p) + r
-	k := int64(n)
+	k := int64(math.Float64bits(shifted))
 	t := roots[k&63]
-	return (t + float64(t*p)) * math.Float64frombits(uint64(k>>6+1023)<<52)
+	return (t + float64(t*p)) * math.Float64frombits(uint64(k<<46>>52+1023)<<52)
 }
 
 // Weights sets w to the upper half of exp(-beta (eps - unit)) as a float32, rounded down, for exponents up to 88; what lies
 // below exp(-86) becomes that. Before it is rounded the value is right to 4e-7, from below.
 func Weights(w []uint16, eps []float64, beta, unit float64) {
 	for i, e := range eps[:len(w)] {
-		x := max(beta*(unit-e), -86)
-		n := math.Floor(x*(64*log2E) + 0.5)
+		x := beta * (unit - e)
+		if x < -86 {
+			x = -86
+		}
+		shifted := x*(64*log2E) + shift
+		n := shifted - shift
 		r := x - n*(math.Ln2/64)
 		p := r + r*r*(0.5+r*(1.0/6))
-		k := int64(n)
+		k := int64(math.Float64bits(shifted))
 		t := roots[k&63] * (1 - 2e-7)
-		w[i] = uint16(math.Float32bits(float32((t+t*p)*math.Float64frombits(uint64(k>>6+1023)<<52))) >> 16)
+		w[i] = uint16(math.Float32bits(float32((t+t*p)*math.Float64frombits(uint64(k<<46>>52+1023)<<52))) >> 16)
 	}
 }
 
