@@ -15,9 +15,10 @@ sim/internal/exact      <-
 sim/internal/near       <-
 sim/internal/gauss      <-
 sim/internal/double     <- sim/internal/exact
+sim/internal/sums       <-
 sim/law                 <- sim/internal/double sim/internal/exact sim/internal/gauss
 sim/bose                <- sim/internal/double sim/internal/gauss sim/law
-sim/growth              <- sim/internal/exact sim/law
+sim/growth              <- sim/internal/exact sim/internal/sums sim/law
 sim/share               <-
 sim/standing            <- sim/bose
 sim/evidence            <- sim/bose sim/growth sim/internal/exact sim/law sim/share

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"preponder/sim/internal/exact"
+	"preponder/sim/internal/sums"
 )
 
 const (
@@ -118,22 +119,22 @@ type grower struct {
 	whole       bool    // and whether that is a small whole number
 	key, extra  uint64
 	energies    uint64
-	mild        bool      // the unit of weights stays
-	unit        float64   // energy whose fitness is the unit of weights
-	light       []uint16  // weights to three digits, while they are mild
-	weight      []float64 // weights in full; nil while newcomers are drawn side by side
-	best        float64   // energy of the best so far
-	top         float64   // and its weight
-	received    []int32   // kept only where a lever or the tree needs it
-	expired     []int32   // of those, links that count no more; kept with received under expiry
-	live        int       // the first link that counts
-	closed      []int32   // members at the ceiling
-	levied      []int32   // members above the levy's share, kept with the tree
-	tree        *sumTree  // nil while rejection works
-	wide        *wideTree // of the same weights, where they vanish; nil where they do not
-	ages        *ages     // under a kernel, fading or idling: then the tree stays
-	untilReject int       // links left before rejection is tried again
-	chosen      []int32   // by the newcomer at hand, for Distinct
+	mild        bool       // the unit of weights stays
+	unit        float64    // energy whose fitness is the unit of weights
+	light       []uint16   // weights to three digits, while they are mild
+	weight      []float64  // weights in full; nil while newcomers are drawn side by side
+	best        float64    // energy of the best so far
+	top         float64    // and its weight
+	received    []int32    // kept only where a lever or the tree needs it
+	expired     []int32    // of those, links that count no more; kept with received under expiry
+	live        int        // the first link that counts
+	closed      []int32    // members at the ceiling
+	levied      []int32    // members above the levy's share, kept with the tree
+	tree        *sums.Tree // nil while rejection works
+	wide        *wideTree  // of the same weights, where they vanish; nil where they do not
+	ages        *ages      // under a kernel, fading or idling: then the tree stays
+	untilReject int        // links left before rejection is tried again
+	chosen      []int32    // by the newcomer at hand, for Distinct
 	workers     int
 	lanes       []*lanes
 	starts      []int  // links before each of the newcomers drawn side by side
@@ -382,7 +383,7 @@ func (g *grower) settle(v int) {
 // stir brings the leaf of j up to date, where there is a tree.
 func (g *grower) stir(j int32) {
 	if g.tree != nil {
-		g.tree.set(int(j), g.pull(j))
+		g.tree.Set(int(j), g.pull(j))
 	}
 	if g.wide != nil {
 		g.wide.set(int(j), g.widePull(j))
@@ -392,7 +393,7 @@ func (g *grower) stir(j int32) {
 // hide takes j out of the trees for the rest of the newcomer at hand.
 func (g *grower) hide(j int32) {
 	if g.tree != nil {
-		g.tree.set(int(j), 0)
+		g.tree.Set(int(j), 0)
 	}
 	if g.wide != nil {
 		g.wide.set(int(j), wide{})
@@ -544,11 +545,11 @@ func (g *grower) plant(v int) {
 		g.count()
 	}
 	if g.tree == nil {
-		g.tree = newSumTree(g.Members)
+		g.tree = sums.New(g.Members)
 		g.untilReject = max(1000, v/4)
 	}
 	g.levied = nil
-	g.tree.fill(v, func(j int) float64 {
+	g.tree.Fill(v, func(j int) float64 {
 		if g.LevyRate > 0 && g.over(int32(j)) {
 			g.levied = append(g.levied, int32(j))
 		}
@@ -564,7 +565,7 @@ func (g *grower) plant(v int) {
 // above the smallest number is open; under fading and idling trees hold bounds, and a draw is taken in the share its weight
 // has of the bound. Where nobody is open it compares in logs.
 func (g *grower) drawExact(v int, index uint64) int32 {
-	vanished := g.tree.total() <= 1e-280
+	vanished := g.tree.Total() <= 1e-280
 	if vanished && g.wide == nil {
 		g.wide = newWideTree(g.Members)
 		g.wide.fill(v, func(j int) wide {
@@ -581,7 +582,7 @@ func (g *grower) drawExact(v int, index uint64) int32 {
 		if vanished {
 			j = int32(g.wide.find(u))
 		} else {
-			j = int32(g.tree.find(float64(u * g.tree.total())))
+			j = int32(g.tree.Find(float64(u * g.tree.Total())))
 		}
 		if g.ages == nil || exact.Unit(exact.Again(bits)) < g.share(j) {
 			return j

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"preponder/sim/internal/exact"
+	"preponder/sim/internal/sums"
 )
 
 // A wide number is m 2^e: weights of a sharp law lie further apart than floating point reaches.
@@ -21,13 +22,13 @@ func wideOf(x float64) wide {
 	return wide{exact.Exp(x - float64(e*math.Ln2)), int(e)}
 }
 
-// A wideTree is a sumTree of wide numbers; it takes the place of one whose weights have vanished.
+// A wideTree is a sums.Tree of wide numbers; it takes the place of one whose weights have vanished.
 type wideTree struct{ level [][]wide }
 
 func newWideTree(leaves int) *wideTree {
 	t := &wideTree{}
-	for n := max(leaves, 1); ; n = (n + fan - 1) / fan {
-		t.level = append(t.level, make([]wide, (n+fan-1)/fan*fan))
+	for n := max(leaves, 1); ; n = (n + sums.Fan - 1) / sums.Fan {
+		t.level = append(t.level, make([]wide, (n+sums.Fan-1)/sums.Fan*sums.Fan))
 		if n == 1 {
 			return t
 		}
@@ -35,14 +36,14 @@ func newWideTree(leaves int) *wideTree {
 }
 
 // parts returns the children of node i in units of the largest of them, and their sum.
-func parts(nodes []wide, i int) (c [fan]float64, sum float64, e int) {
+func parts(nodes []wide, i int) (c [sums.Fan]float64, sum float64, e int) {
 	e = math.MinInt
-	for _, w := range nodes[i*fan : i*fan+fan] {
+	for _, w := range nodes[i*sums.Fan : i*sums.Fan+sums.Fan] {
 		if w.m > 0 {
 			e = max(e, w.e)
 		}
 	}
-	for k, w := range nodes[i*fan : i*fan+fan] {
+	for k, w := range nodes[i*sums.Fan : i*sums.Fan+sums.Fan] {
 		if w.m > 0 && w.e > e-1100 {
 			c[k] = math.Ldexp(w.m, w.e-e)
 			sum += c[k]
@@ -54,7 +55,7 @@ func parts(nodes []wide, i int) (c [fan]float64, sum float64, e int) {
 func (t *wideTree) set(j int, w wide) {
 	t.level[0][j] = w
 	for k := range len(t.level) - 1 {
-		j /= fan
+		j /= sums.Fan
 		t.sum(k, j)
 	}
 }
@@ -78,7 +79,7 @@ func (t *wideTree) fill(n int, weight func(j int) wide) {
 		}
 	}
 	for k := range len(t.level) - 1 {
-		for i := range len(t.level[k]) / fan {
+		for i := range len(t.level[k]) / sums.Fan {
 			t.sum(k, i)
 		}
 	}
@@ -91,9 +92,9 @@ func (t *wideTree) find(u float64) int {
 	i := 0
 	for k := len(t.level) - 2; k >= 0; k-- {
 		c, sum, _ := parts(t.level[k], i)
-		s, rest := among(c[:], float64(u*sum))
+		s, rest := sums.Among(c[:], float64(u*sum))
 		u = math.Max(0, math.Min(rest/c[s], 1))
-		i = i*fan + s
+		i = i*sums.Fan + s
 	}
 	return i
 }
