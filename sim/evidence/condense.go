@@ -86,6 +86,7 @@ type Condensed struct {
 	Top        []Member       `json:"top"`
 	Classes    []Class        `json:"classes"`
 	Track      Track          `json:"track"`
+	Forecast   *Forecast      `json:"forecast,omitempty"`
 }
 
 // Condense keeps of rows and study what a casebook needs.
@@ -110,6 +111,7 @@ func Condense(l *Rows, s *Study, label string) *Condensed {
 		s.Reasons = append(s.Reasons, fmt.Sprintf("Newcomers bring %.2g links each on average; networks are grown forward with 1 to %d, so no outlook is given.", c.PerArrival, growth.MaxLinks))
 		c.Law, c.Draws = nil, []Law{}
 	}
+	c.Forecast = s.Forecast.trimmed()
 	c.Check = s.check(c.Notes)
 	c.keepMembers(s, received)
 	path := share.Along(h.Target, h.Before, min(10, h.Members()), h.Members(), pathPoints, nil)
@@ -123,7 +125,7 @@ func (s *Study) check(notes []string) Check {
 		c.Reasons = []string{}
 	}
 	switch {
-	case s.Verdict == None:
+	case s.Verdict == None || s.Verdict == Forecasted:
 		c.Verdict = "does not fit"
 	case len(s.Reasons)+len(notes) > 0:
 		c.Verdict = "reservations"
@@ -272,6 +274,9 @@ func (c *Condensed) Verify() error {
 		return fmt.Errorf("it holds %d members one by one and %d classes; %d and %d are allowed", len(c.Top), len(c.Classes), maxSingles, maxClasses)
 	case len(c.Track.Share) != len(c.Track.Members) || len(c.Track.Top4) != len(c.Track.Members) || len(c.Track.HHI) != len(c.Track.Members):
 		return fmt.Errorf("its shares over size are of unequal length")
+	}
+	if err := c.Forecast.verify(); err != nil {
+		return err
 	}
 	if c.Law == nil {
 		return nil

@@ -65,6 +65,12 @@ func NewHistory(l *Rows) *History {
 		}
 	}
 	h.Group = append(h.Group, int32(len(order)))
+	h.countChoices()
+	return h
+}
+
+func (h *History) countChoices() {
+	h.Choices, h.ByNewcomers = 0, 0
 	for g := range h.Groups() {
 		for i := h.Group[g]; i < h.Group[g+1]; i++ {
 			if h.choice(i, g) {
@@ -75,7 +81,17 @@ func NewHistory(l *Rows) *History {
 			}
 		}
 	}
-	return h
+}
+
+// Until returns the history as it was when a share of the log's links had been made, to the end of a group.
+func (h *History) Until(share float64) *History {
+	g := sort.Search(h.Groups(), func(g int) bool { return float64(h.Group[g+1]) >= share*float64(len(h.Target)) })
+	g = min(g+1, h.Groups())
+	links := h.Group[g]
+	members := sort.Search(h.Members(), func(j int) bool { return int(h.Arrived[j]) >= g })
+	p := &History{Names: h.Names[:members], Source: h.Source[:links], Target: h.Target[:links], Group: h.Group[:g+1], Arrived: h.Arrived[:members], Repeats: h.Repeats}
+	p.countChoices()
+	return p
 }
 
 // Groups returns how many different times the log has.

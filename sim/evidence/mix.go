@@ -18,12 +18,21 @@ type cell struct {
 
 // cells merges members with equal n <= 60 and ln E within 0.02.
 func cells(chosen []int32, exposure []float64) (list []cell, of []int32) {
+	n := make([]float64, len(chosen))
+	for j, c := range chosen {
+		n[j] = float64(c)
+	}
+	return cellsOf(n, exposure)
+}
+
+// cellsOf is cells for numbers of links that need not be whole: those within 1/16 are taken together.
+func cellsOf(chosen, exposure []float64) (list []cell, of []int32) {
 	type key struct{ n, bin int32 }
 	at := map[key]int32{}
 	of = make([]int32, len(chosen))
 	for j, n := range chosen {
 		e := math.Max(exposure[j], 1e-12)
-		k := key{n, int32(math.Floor(math.Log(e) / 0.02))}
+		k := key{int32(math.Round(16 * n)), int32(math.Floor(math.Log(e) / 0.02))}
 		if n > hub {
 			k.bin = int32(-j - 1e6)
 		}
@@ -31,7 +40,7 @@ func cells(chosen []int32, exposure []float64) (list []cell, of []int32) {
 		if !known {
 			c = int32(len(list))
 			at[k] = c
-			list = append(list, cell{n: float64(n)})
+			list = append(list, cell{n: math.Round(16*n) / 16})
 		}
 		list[c].e += e
 		list[c].count++

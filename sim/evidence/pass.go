@@ -3,6 +3,8 @@ package evidence
 import (
 	"math"
 	"math/bits"
+
+	tree "preponder/sim/internal/sums"
 )
 
 // Terms are the exponents of the extended rule
@@ -22,6 +24,7 @@ type sums struct {
 	exposure []float64         // E_j = sum over choices whose set holds j of w_j / Z
 	chosen   []int32           // n_j
 	gradient [features]float64 // of the sum over choices of ln p_target by the terms
+	recent   []float64         // n_j, older choices counting less, if asked for; exposure then likewise
 	chance   []float64         // p of each choice, if asked for
 	present  []int32           // size of its choice set, if asked for
 }
@@ -46,6 +49,8 @@ type passer struct {
 	w        []float64 // current weights, 0 before arrival
 	last     []float64 // S when E_j was last brought up to date
 	s        float64   // sum of 1/Z over choices so far
+	count    float64   // what the next choice counts, 1 without drift
+	growth   float64   // by which that grows from choice to choice
 	z        float64
 	zx       [features]float64
 	links    []int32 // received so far
@@ -55,7 +60,8 @@ type passer struct {
 	picks    [][]int32 // earlier picks of each source, nil where pairs repeat
 	ageDue   calendar
 	idleDue  calendar
-	here     int // members present
+	here     int        // members present
+	tree     *tree.Tree // of eta w, where targets are to be drawn
 
 	// Kept so that a change of weight costs no logarithm: ln(kappa + d) and (kappa + d)^alpha of every member, and the
 	// factors of the half-octaves of age and idleness.
@@ -68,19 +74,42 @@ type passer struct {
 // pass evaluates the conditional likelihood. Cost: O(links + members) plain; the half-octaves add O(log) changes a
 // member and activity.
 func pass(h *History, eta []float64, t Terms, w want) sums {
-	n := h.Members()
+	return newPasser(h, eta, t, w, h.Members(), h.Groups()).run(w)
+}
+
+// recently is a pass in which a choice counts half as much as one that comes half choices later.
+func recently(h *History, eta []float64, t Terms, half float64) sums {
+	p := newPasser(h, eta, t, exposures, h.Members(), h.Groups())
+	p.growth = math.Exp2(1 / half)
+	p.out.recent = make([]float64, h.Members())
+	out := p.run(exposures)
+	for j := range out.recent {
+		out.recent[j] /= p.count
+		out.exposure[j] /= p.count
+	}
+	return out
+}
+
+// newPasser returns one that has seen nothing yet, with room for so many members and groups.
+func newPasser(h *History, eta []float64, t Terms, w want, n, groups int) *passer {
 	p := &passer{h: h, eta: eta, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes,
-		w: make([]float64, n), last: make([]float64, n), links: make([]int32, n)}
+		w: make([]float64, n), last: make([]float64, n), links: make([]int32, n), count: 1, growth: 1}
 	p.out = sums{exposure: make([]float64, n), chosen: make([]int32, n)}
+	p.kappa = math.Exp(t.LogKappa)
 	if !p.plain {
 		p.ageClass, p.idle, p.active = make([]int16, n), make([]int16, n), make([]int32, n)
-		p.ageDue, p.idleDue = newCalendar(n+1), newCalendar(h.Groups()+1)
+		p.ageDue, p.idleDue = newCalendar(n+1), newCalendar(groups+1)
 		p.prepare()
 	}
-	p.kappa = math.Exp(t.LogKappa)
 	if h.Repeats == 0 {
 		p.picks = make([][]int32, n)
 	}
+	return p
+}
+
+// run walks the whole log.
+func (p *passer) run(w want) sums {
+	h := p.h
 	if w == chances {
 		p.out.chance = make([]float64, 0, h.Choices)
 		p.out.present = make([]int32, 0, h.Choices)
@@ -115,9 +144,13 @@ func (p *passer) choose(i int32, g int, w want) {
 		}
 	}
 	p.barred(src, g, drop)
-	p.barred(src, g, func(k int32) { p.out.exposure[k] -= p.w[k] / z })
-	p.s += 1 / z
+	p.barred(src, g, func(k int32) { p.out.exposure[k] -= p.count * p.w[k] / z })
+	p.s += p.count / z
 	p.out.chosen[t]++
+	if p.out.recent != nil {
+		p.out.recent[t] += p.count
+		p.count *= p.growth
+	}
 	p.out.logLik += math.Log(p.w[t]) - math.Log(z)
 	x := p.features(t)
 	if !p.plain {
@@ -217,6 +250,9 @@ func (p *passer) set(j int32) {
 	p.last[j] = p.s
 	p.z += p.eta[j] * (now - old)
 	p.w[j] = now
+	if p.tree != nil {
+		p.tree.Set(int(j), p.eta[j]*now)
+	}
 }
 
 // unset takes j's weighted features out of the sums before anything it depends on changes.

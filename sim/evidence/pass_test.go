@@ -126,6 +126,53 @@ func TestFastPassAgainstDoubleLoop(t *testing.T) {
 	}
 }
 
+// With drift every choice counts half as much as one half choices later: links and exposures choice by choice, from passes
+// over ever longer parts of the log.
+func TestRecentAgainstParts(t *testing.T) {
+	h := randomHistory(3, false)
+	terms := Terms{0.7, 0.3, 0.4, 0.6}
+	eta := newMixed(h).eta
+	const half = 40.0
+	got := recently(h, eta, terms, half)
+	n, e := make([]float64, h.Members()), make([]float64, h.Members())
+	var before sums
+	for g := 1; g <= h.Groups(); g++ {
+		part := *h
+		part.Group = h.Group[:g+1]
+		part.countChoices()
+		now := pass(&part, eta, terms, exposures)
+		if made := part.Choices - choicesOf(before); made > 0 {
+			// Rows of one group share their exposure evenly only if few are in it: count each group by its middle.
+			first := float64(part.Choices - made)
+			for j := range n {
+				was, exposed := int32(0), 0.0
+				if before.chosen != nil {
+					was, exposed = before.chosen[j], before.exposure[j]
+				}
+				weight := 0.0
+				for k := range made {
+					weight += math.Exp2((first+float64(k)-float64(h.Choices))/half) / float64(made)
+				}
+				n[j] += weight * float64(now.chosen[j]-was)
+				e[j] += weight * (now.exposure[j] - exposed)
+			}
+		}
+		before = now
+	}
+	for j := range n {
+		near.Abs(t, "links", got.recent[j], n[j], 0.05*(0.2+n[j]))
+		near.Abs(t, "exposure", got.exposure[j], e[j], 0.05*(0.2+e[j]))
+	}
+}
+
+func choicesOf(s sums) int {
+	n := 0
+	for _, c := range s.chosen {
+		n += int(c)
+	}
+	return n
+}
+
 func TestGradientAgainstDifferences(t *testing.T) {
 	h := randomHistory(9, false)
 	eta := make([]float64, h.Members())

@@ -190,8 +190,8 @@ func improve(h matrix, x, was, g, gWas [features]float64) matrix {
 }
 
 // testPlain compares the plain rule, fitness free, with kernel, ageing and recent activity added, from two starts, and
-// looks for links dealt to anyone alike. It returns the rule and the plain fit.
-func testPlain(h *History, step func(done float64) error) (Rule, *mixed, error) {
+// looks for links dealt to anyone alike. It returns the rule, the plain fit and the extended one with its terms.
+func testPlain(h *History, step func(done float64) error) (rule Rule, plain, extended *mixed, terms Terms, err error) {
 	done := 0.0
 	tick := func() error {
 		done += (0.97 - done) * 0.06
@@ -199,16 +199,15 @@ func testPlain(h *History, step func(done float64) error) (Rule, *mixed, error) 
 	}
 	m := h.PerArrival()
 	plainTerms := Terms{1, math.Log(m), 0, 0}
-	plain := newMixed(h)
+	plain = newMixed(h)
 	equal := pass(h, plain.eta, plainTerms, exposures).logLik - float64(h.Choices)
 	plain.settle(plainTerms, 12, 40, 0.02)
 	if err := tick(); err != nil {
-		return Rule{}, nil, err
+		return Rule{}, nil, nil, terms, err
 	}
-	rule := Rule{Bits: Bits{Fitness: perChoice(plain.logLik-equal, h.Choices)}, Kernel: 1}
+	rule = Rule{Bits: Bits{Fitness: perChoice(plain.logLik-equal, h.Choices)}, Kernel: 1}
 	rule.OpenShare, rule.OpenGain = openShare(h, plain, plainTerms)
 	best := math.Inf(-1)
-	var terms Terms
 	var metric [features]float64
 	for start := range 2 {
 		ext := newMixed(h)
@@ -219,15 +218,15 @@ func testPlain(h *History, step func(done float64) error) (Rule, *mixed, error) 
 		} else {
 			var err error
 			if from, _, err = ext.climb(plainTerms, false, tick); err != nil {
-				return rule, nil, err
+				return rule, nil, nil, terms, err
 			}
 		}
 		t, _, err := ext.climb(from, true, tick)
 		if err != nil {
-			return rule, nil, err
+			return rule, nil, nil, terms, err
 		}
 		if l := ext.settle(t, 8, 40, 0.02); l > best {
-			best, terms = l, t
+			best, terms, extended = l, t, ext
 		}
 	}
 	rule.Gain = math.Max(0, best-plain.logLik)
@@ -249,7 +248,7 @@ func testPlain(h *History, step func(done float64) error) (Rule, *mixed, error) 
 			rule.Leading = "kernel"
 		}
 	}
-	return rule, plain, nil
+	return rule, plain, extended, terms, nil
 }
 
 func perChoice(l float64, choices int) float64 { return l / float64(max(1, choices)) / math.Ln2 }

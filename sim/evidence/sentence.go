@@ -66,6 +66,9 @@ func (c Condensed) Words() (heading, meaning string) {
 		meaning = "The log cannot tell whether a condensate forms. " + c.open()
 	default:
 		heading = "No verdict"
+		if c.Verdict == Forecasted {
+			heading = "A forecast, not a verdict"
+		}
 		if len(c.Check.Reasons) > 0 {
 			meaning = c.Check.Reasons[0]
 		}

@@ -15,22 +15,24 @@ const (
 	FitGetRich = "fit-get-rich"
 	Level      = "level"     // no difference in fitness visible
 	Undecided  = "undecided" // the log cannot tell
+	Forecasted = "forecast"  // the plain rule does not hold: a forecast stands in the place of a verdict
 	None       = "none"      // no verdict and no forecast; the check says why
 )
 
 // A Study is what a log says.
 type Study struct {
-	Verdict string
-	Rule    Rule
-	Reasons []string // why there is no limit verdict
-	Ground  Interval // ground integral
-	Margin  Interval
-	NoTop   bool // a law without a top fits as well
-	Law     *Law
-	Draws   []Law
-	Fitness []posterior // by member
-	plain   *mixed
-	history *History
+	Verdict  string
+	Rule     Rule
+	Reasons  []string // why there is no limit verdict
+	Ground   Interval // ground integral
+	Margin   Interval
+	NoTop    bool // a law without a top fits as well
+	Law      *Law
+	Draws    []Law
+	Fitness  []posterior // by member
+	Forecast *Forecast   // where the plain rule does not hold
+	plain    *mixed
+	history  *History
 }
 
 // An Interval is an estimate with its 95 per cent interval; infinities stand for themselves.
@@ -50,13 +52,25 @@ func Examine(h *History, report Report) (*Study, error) {
 		s.Reasons = append(s.Reasons, "Every choice went to one and the same member, so there is nothing to compare it with. Shares are shown.")
 		return s, nil
 	}
-	var err error
-	s.Rule, s.plain, err = testPlain(h, func(done float64) error { return report(0.5*done, "testing the plain rule") })
+	rule, plain, extended, terms, err := testPlain(h, func(done float64) error { return report(0.4*done, "testing the plain rule") })
 	if err != nil {
 		return nil, err
 	}
+	s.Rule, s.plain = rule, plain
 	if !s.Rule.Plain {
-		s.Reasons = append(s.Reasons, s.Rule.Sentence(), "No forecast is given: this version grows networks forward only by the plain rule.")
+		s.Reasons = append(s.Reasons, s.Rule.Sentence())
+		s.Forecast, err = forecast(h, extended, terms, func(done float64) error { return report(0.4+0.6*done, "growing the log on") })
+		switch {
+		case err != nil:
+			return nil, err
+		case s.Forecast == nil:
+			s.Reasons = append(s.Reasons, fmt.Sprintf("No forecast is given: it could not be tested on so short a log, which has %d choices of the %d needed.", h.Choices, forecastChoices))
+		default:
+			s.Reasons = append(s.Reasons, s.Forecast.sentences()...)
+			if s.Forecast.Given {
+				s.Verdict = Forecasted
+			}
+		}
 		return s, nil
 	}
 	return s, s.fitLaws(report)

@@ -123,7 +123,11 @@ func describe(r service.ReadReport, body json.RawMessage) (json.RawMessage, erro
 		"verdict": e.Verdict, "heading": s.Heading, "meaning": s.Meaning, "caution": s.Caution,
 		"groundIntegral": e.Ground, "margin": e.Margin, "rule": e.Rule, "check": e.Check, "notes": e.Notes, "top": top,
 		"kernel": evidence.Range{Estimate: &e.Rule.Kernel}, "openShare": evidence.Range{Estimate: &e.Rule.OpenShare},
-		"backTest": nil, "holdOut": nil,
+		"backTest": nil, "holdOut": nil, "forecast": e.Forecast,
+	}
+	if f := e.Forecast; f != nil {
+		out["backTest"] = map[string]any{"inside": f.Past.Inside, "of": 3, "factor": f.Factor}
+		out["holdOut"] = f.Bits
 	}
 	return json.Marshal(out)
 }

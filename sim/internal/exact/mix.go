@@ -10,6 +10,7 @@ const (
 	Extra
 	Posterior
 	Families
+	Futures
 )
 
 // Key begins the draws of one purpose under one seed.
