@@ -547,11 +547,11 @@ func (f *Forecast) sentences() []string {
 		out = append(out, fmt.Sprintf("If it grows on as it did, today's leader goes from %s of all links to %s (%s to %s) by the time there are half as many links again; still leading: %.0f in 100.",
 			percent(f.Today.Q50[0]), percent(f.Today.Q50[last]), percent(f.Today.Q025[last]), percent(f.Today.Q975[last]), 100*f.Same))
 	}
-	fitness := "Lasting fitness explains nothing of the later choices that could be told"
-	if f.Bits.Fitness >= 0.005 {
-		fitness = fmt.Sprintf("Lasting fitness explains %.2f bits of each choice", f.Bits.Fitness)
+	fitness := "less than 0.01"
+	if f.Bits.Fitness >= 0.01 {
+		fitness = fmt.Sprintf("%.2f", f.Bits.Fitness)
 	}
-	out = append(out, fmt.Sprintf("%s; recent activity, age and links already held explain %.2f.", fitness, math.Max(0, f.Bits.Rest)))
+	out = append(out, fmt.Sprintf("Lasting fitness explains %s bits of each of the last 30 %% of choices; recent activity, age and links already held explain %.2f.", fitness, math.Max(0, f.Bits.Rest)))
 	if !f.Given {
 		return append(out, "No forecast from this log: tested on its own past, the forecast missed by far more than it allowed for.")
 	}
@@ -634,8 +634,10 @@ func percent(x float64) string {
 	switch {
 	case x >= 0.1:
 		return fmt.Sprintf("%.0f %%", 100*x)
+	case x >= 0.01:
+		return fmt.Sprintf("%.1f %%", 100*x)
 	case x >= 0.001:
-		return fmt.Sprintf("%.2g %%", 100*x)
+		return fmt.Sprintf("%.2f %%", 100*x)
 	}
 	return fmt.Sprintf("%.1g %%", 100*x)
 }

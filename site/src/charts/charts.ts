@@ -1,5 +1,5 @@
 // Charts: data in, element out. Ink is the law, ember the leader, blues its rivals, open circles what was counted.
-import type { Curves, Grown, Outlook, Solved } from "../state/types";
+import type { Band, Curves, Grown, Outlook, Solved } from "../state/types";
 import { count, number, percent } from "../words/format";
 import { Plane, type Point } from "./plane";
 
@@ -234,9 +234,33 @@ export function track(t: { members: number[]; share: number[]; top4: number[] },
   const p = new Plane({ width, height: 170, margin: { left: 40, right: 62, bottom: 24, top: 10 }, x: { domain: [low, Math.max(high, low + 1)], log: true, ticks: decades(low, high), format: count }, y: { domain: [0, top], ticks: 3, format: percent } });
   p.grid(line).line(four, { stroke: blue }).line(leader, { stroke: ember, width: 2.2 });
   const a = leader.at(-1), b = four.at(-1);
-  if (a) p.text(a, "leader", { dx: 6, fill: emberText, weight: 600 });
-  if (b) p.text(b, "top four", { dx: 6, fill: ink });
+  const apart = (b?.y ?? 0) - (a?.y ?? 0) < top * 0.09 ? 6 : 0; // two labels keep a line apart
+  if (a) p.text(a, "leader", { dx: 6, dy: apart, fill: emberText, weight: 600 });
+  if (b) p.text(b, "top four", { dx: 6, dy: -apart, fill: ink });
   return p.axes();
+}
+
+/** A share over links with its bands: 95 and 80 of 100 paths and the middle; what happened, where it is known. */
+export function ahead(links: readonly number[], b: Band, truth: readonly number[] | undefined, label: string, width: number): Element {
+  const first = links[0] ?? 1, end = Math.max(links.at(-1) ?? 2, first + 1);
+  const top = Math.min(1, Math.max(...b.q975, ...(truth ?? [])) * 1.15);
+  const p = new Plane({ width, height: 170, margin: { left: 46, right: 62, bottom: 24, top: 12 }, x: { domain: [first, end], ticks: 4, format: count }, y: { domain: [0, top], ticks: 3, format: percent } });
+  p.grid(line);
+  bands(p, links.map((x, i) => ({ x, low: b.q025[i]!, high: b.q975[i]!, inner: [b.q10[i]!, b.q90[i]!], y: b.q50[i]! })));
+  if (truth) {
+    truth.forEach((y, i) => p.dot({ x: links[i]!, y }, 3, { stroke: ink, width: 1.5, fill: css("sheet") }));
+    p.text({ x: end, y: truth.at(-1) ?? 0 }, "happened", { dx: 8, fill: ink });
+  } else {
+    p.dot({ x: first, y: b.q50[0] ?? 0 }, 4.5, { fill: ember });
+    p.text({ x: end, y: b.q50.at(-1) ?? 0 }, label, { dx: 6, fill: ink });
+  }
+  return p.axes();
+}
+
+function bands(p: Plane, at: { x: number; low: number; high: number; inner: number[]; y: number }[]): void {
+  p.area(at.map((b) => ({ x: b.x, low: b.low, high: b.high })), { fill: css("r6"), opacity: 0.35 });
+  p.area(at.map((b) => ({ x: b.x, low: b.inner[0]!, high: b.inner[1]! })), { fill: css("r5"), opacity: 0.45 });
+  p.line(at.map((b) => ({ x: b.x, y: b.y })), { stroke: css("r1"), width: 2 });
 }
 
 /** The leader's share from today to the horizon: 95 and 80 of 100 runs, the middle, the limit. */
@@ -244,9 +268,7 @@ export function fan(o: Outlook, width: number): Element {
   const top = Math.min(1, Math.max(o.past.limit, ...o.bySize.map((b) => b.q975)) * 1.15);
   const p = new Plane({ width, height: 190, margin: { left: 40, right: 62, bottom: 24, top: 12 }, x: { domain: [o.members, Math.max(o.horizon, o.members + 1)], ticks: 4, format: count }, y: { domain: [0, top], ticks: 3, format: percent } });
   p.grid(line);
-  p.area(o.bySize.map((b) => ({ x: b.members, low: b.q025, high: b.q975 })), { fill: css("r6"), opacity: 0.35 });
-  p.area(o.bySize.map((b) => ({ x: b.members, low: b.q10, high: b.q90 })), { fill: css("r5"), opacity: 0.45 });
-  p.line(o.bySize.map((b) => ({ x: b.members, y: b.q50 })), { stroke: css("r1"), width: 2 });
+  bands(p, o.bySize.map((b) => ({ x: b.members, low: b.q025, high: b.q975, inner: [b.q10, b.q90], y: b.q50 })));
   if (o.past.limit > 0) {
     p.across(o.past.limit, { stroke: ink, dash: "4 3" });
     p.text({ x: o.horizon, y: o.past.limit }, `limit ${percent(o.past.limit)}`, { dx: 6, fill: ink });

@@ -1,18 +1,21 @@
 // The brief: what is printed, and its place among the sections.
 import { signal } from "@preact/signals";
 import type { JSX } from "preact";
-import { fan, shares, track } from "../charts/charts";
+import { ahead, fan, shares, track } from "../charts/charts";
 import { useLayoutEffect, useRef } from "preact/hooks";
+import { Check } from "../controls/controls";
 import { current, doc, tables } from "../state/document";
 import { grown, reached, solved } from "../state/results";
 import { addressWith, fromFile } from "../state/storage";
-import type { Entry, Law } from "../state/types";
+import type { Entry, Evidence, Law } from "../state/types";
 import { count, number, percent, range } from "../words/format";
-import { evidenceWords, Origin } from "./evidence";
+import { evidenceWords, Origin, otherwise } from "./evidence";
 import { Section } from "./section";
 import { outlookOf } from "./sections";
 
 export const preparedFor = signal("");
+/** Where a log does not follow the plain rule, whether the brief is of the log. */
+export const briefOfLog = signal(true);
 /** The picture for paper, as a data address, and the code of the casebook. */
 export const briefPicture = signal<string | undefined>(undefined);
 export const briefCode = signal<string | undefined>(undefined);
@@ -21,10 +24,12 @@ export const briefCode = signal<string | undefined>(undefined);
 const longest = 3200;
 
 export function Brief(): JSX.Element {
+  const ev = doc.value?.book.evidence;
   return (
     <Section id="brief" title="Brief" aside={<button type="button" onClick={() => window.print()}>Print</button>}>
       <p class="says">One page on paper: picture, verdict, figures, what is assumed, the caution and the code that reopens this casebook. Print to PDF to hand it round.</p>
       <label class="field">Prepared for <input type="text" value={preparedFor.value} onInput={(e) => (preparedFor.value = e.currentTarget.value)} maxLength={200} /></label>
+      {ev && otherwise(ev) && <Check label="Brief of the log" help="off: of this entry, with the log as a part of it" value={briefOfLog.value} onChange={(v) => (briefOfLog.value = v)} />}
     </Section>
   );
 }
@@ -66,6 +71,73 @@ function assumptions(e: Entry): string[] {
   ];
 }
 
+/** The log's part of the brief. */
+function LogPart(p: { ev: Evidence; heading: string; meaning: string; alone?: boolean }): JSX.Element {
+  const { ev } = p;
+  return (
+    <div class="part">
+      {!p.alone && <h2>The log: {p.heading}</h2>}
+      <p>{p.meaning}</p>
+      {ev.check.reasons.slice(otherwise(ev) ? 1 : 0).map((r) => <p key={r}>{r}</p>)}
+      <p>{count(ev.rows)} rows read, {count(ev.used)} used; {count(ev.members)} members, {count(ev.links)} links. Leader {ev.top[0]?.id} with {percent((ev.top[0]?.links ?? 0) / Math.max(1, ev.links))}; top four {percent(ev.top4)}; HHI {number(ev.hhi)}.{ev.margin.low !== null ? ` Margin ${number(ev.margin.estimate)}, 95 % ${range(ev.margin)}.` : ""}</p>
+      {ev.top[0] && <Origin m={ev.top[0]} />}
+      {ev.notes.length > 0 && <p>{ev.notes.join(" ")}</p>}
+    </div>
+  );
+}
+
+/** A log that does not follow the plain rule stands by itself on paper: no entry grows from it. */
+function LogBrief(p: { book: string; ev: Evidence; heading: string; meaning: string }): JSX.Element {
+  const { ev } = p;
+  const f = ev.forecast;
+  return (
+    <section class="paper" aria-label="Brief for print">
+      <header>
+        <p>{p.book}, {new Date().toISOString().slice(0, 10)}{preparedFor.value ? ` — prepared for ${preparedFor.value}` : ""}</p>
+        <h1>{p.heading}</h1>
+        <p>The link log{ev.label ? ` ${ev.label}` : ""}, as it was read; no entry of the casebook grows from it.</p>
+      </header>
+      <LogPart ev={ev} heading={p.heading} meaning={p.meaning} alone />
+      <div class="charts">
+        <figure><figcaption>Shares as the log went, over members</figcaption><Drawn of={ev} draw={(x) => track(ev.track, x)} /></figure>
+        {f?.given && <figure><figcaption>Whoever leads, to {count(f.links.at(-1) ?? 0)} links</figcaption><Drawn of={f} draw={(x) => ahead(f.links, f.leader, undefined, "leader", x)} /></figure>}
+        {f && <figure><figcaption>The test on the log's own past, over links</figcaption><Drawn of={f} draw={(x) => ahead(f.past.links, f.past.leader, f.past.truth, "", x)} /></figure>}
+        {f?.given && <figure><figcaption>Top ten together</figcaption><Drawn of={f} draw={(x) => ahead(f.links, f.topTen, undefined, "top ten", x)} /></figure>}
+      </div>
+      <div class="part">
+        <table>
+          <thead><tr><th scope="col">Largest members</th><th scope="col">Links</th><th scope="col">Share</th><th scope="col">Arrived as number</th></tr></thead>
+          <tbody>{ev.top.slice(0, 5).map((m) => <tr key={m.id}><th scope="row">{m.id}</th><td>{count(m.links)}</td><td>{percent(m.links / Math.max(1, ev.links))}</td><td>{count(m.arrived + 1)}</td></tr>)}</tbody>
+        </table>
+      </div>
+      {f?.given && (
+        <div class="part">
+          <h2>What is assumed</h2>
+          <ul>
+            <li>Newcomers and members choose by fitness, links held, age and recent activity, as fitted to this log; who is active, who joins and how often goes on as in the last 30 % of it.</li>
+            <li>Bands hold 95 and 80 of 100 paths{f.factor > 1 ? `, widened ${f.factor.toFixed(1)} times for what the test on the past missed` : ""}. A change of rules or of who takes part is not in them.</li>
+          </ul>
+        </div>
+      )}
+      <p class="caution"><strong>Caution.</strong> {tables.value?.caution}</p>
+      <Code />
+    </section>
+  );
+}
+
+/** The code that opens the casebook again. */
+function Code(): JSX.Element {
+  const d = doc.value;
+  return (
+    <>
+      {briefCode.value && briefCode.value.length > longest && <p class="code">The code of this casebook has {count(briefCode.value.length)} characters, too many for paper: hand it round with the link or the case file.</p>}
+      {d && briefCode.value && briefCode.value.length <= longest && (
+        <p class="code">Opens again by this {fromFile() ? "code, pasted under “Open”" : "link, or by what follows its #c= pasted under “Open”"}: <code>{fromFile() ? briefCode.value : addressWith(briefCode.value, d.keys.indexOf(d.open))}</code></p>
+      )}
+    </>
+  );
+}
+
 /** Paper only. */
 export function PrintedBrief(): JSX.Element | null {
   const c = current.value;
@@ -79,6 +151,7 @@ export function PrintedBrief(): JSX.Element | null {
   const atSize = s.verdict.atSize || (reached.value?.key === solved.value?.key ? reached.value?.value : "");
   const without = ["unknown", "gelation", "sublinear"].includes(s.regime) ? " without these levers" : "";
   const w = evidenceWords.value;
+  if (ev && w && otherwise(ev) && briefOfLog.value) return <LogBrief book={d.book.title} ev={ev} heading={w.heading} meaning={w.meaning} />;
   return (
     <section class="paper" aria-label="Brief for print">
       <header>
@@ -104,16 +177,7 @@ export function PrintedBrief(): JSX.Element | null {
           </table>
         </div>
       </div>
-      {ev && w && (
-        <div class="part">
-          <h2>The log: {w.heading}</h2>
-          <p>{w.meaning}</p>
-          {ev.check.reasons.slice(ev.verdict === "none" ? 1 : 0).map((r) => <p key={r}>{r}</p>)}
-          <p>{count(ev.rows)} rows read, {count(ev.used)} used; {count(ev.members)} members, {count(ev.links)} links. Leader {ev.top[0]?.id} with {percent((ev.top[0]?.links ?? 0) / Math.max(1, ev.links))}; top four {percent(ev.top4)}; HHI {number(ev.hhi)}.{ev.margin.low !== null ? ` Margin ${number(ev.margin.estimate)}, 95 % ${range(ev.margin)}.` : ""}</p>
-          {ev.top[0] && <Origin m={ev.top[0]} />}
-          {ev.notes.length > 0 && <p>{ev.notes.join(" ")}</p>}
-        </div>
-      )}
+      {ev && w && <LogPart ev={ev} heading={w.heading} meaning={w.meaning} />}
       <div class="charts">
         {ev && w ? <figure><figcaption>Shares as the log went</figcaption><Drawn of={ev} draw={(x) => track(ev.track, x)} /></figure> : <figure><figcaption>Share of all links over size</figcaption><Drawn of={g} draw={(x) => shares(g, x)} /></figure>}
         {o && <figure><figcaption>Leader's share to {count(o.horizon)} members, {o.runs} runs</figcaption><Drawn of={o} draw={(x) => fan(o, x)} /></figure>}
@@ -124,10 +188,7 @@ export function PrintedBrief(): JSX.Element | null {
         <ul>{assumptions(e).map((a) => <li key={a}>{a}</li>)}</ul>
       </div>
       <p class="caution"><strong>Caution.</strong> {tables.value?.caution}</p>
-      {briefCode.value && briefCode.value.length > longest && <p class="code">The code of this casebook has {count(briefCode.value.length)} characters, too many for paper: hand it round with the link or the case file.</p>}
-      {briefCode.value && briefCode.value.length <= longest && (
-        <p class="code">Opens again by this {fromFile() ? "code, pasted under “Open”" : "link, or by what follows its #c= pasted under “Open”"}: <code>{fromFile() ? briefCode.value : addressWith(briefCode.value, d.keys.indexOf(d.open))}</code></p>
-      )}
+      <Code />
     </section>
   );
 }

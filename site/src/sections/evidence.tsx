@@ -1,11 +1,11 @@
 // What a log said: read and left out, whether the plain rule holds, and what follows.
 import type { JSX } from "preact";
-import { track } from "../charts/charts";
+import { ahead, track } from "../charts/charts";
 import { Figure } from "../charts/figure";
 import { doc, tables } from "../state/document";
 import { effect, signal } from "@preact/signals";
 import { engines } from "../state/results";
-import type { Evidence, EvidenceMember } from "../state/types";
+import type { Band, Evidence, EvidenceMember, Forecast } from "../state/types";
 import { count, number, percent, range } from "../words/format";
 import { Section } from "./section";
 
@@ -35,6 +35,31 @@ export function Origin(p: { m: EvidenceMember }): JSX.Element | null {
   );
 }
 
+/** The log is not one of the plain rule: the first of the reasons is the meaning, and no entry grows from it. */
+export const otherwise = (e: Evidence): boolean => e.verdict === "none" || e.verdict === "forecast";
+
+const table = (links: number[], b: Band, truth?: number[]) => () => ({
+  columns: ["links", "low (2.5 %)", "10 %", "middle", "90 %", "high (97.5 %)", ...(truth ? ["happened"] : [])],
+  rows: links.map((x, i) => [x, b.q025[i] ?? 0, b.q10[i] ?? 0, b.q50[i] ?? 0, b.q90[i] ?? 0, b.q975[i] ?? 0, ...(truth ? [truth[i] ?? 0] : [])]),
+});
+
+const between = (b: Band, i: number): string => `${percent(b.q50.at(i) ?? 0)} (${percent(b.q025.at(i) ?? 0)} to ${percent(b.q975.at(i) ?? 0)})`;
+
+function Ahead(p: { f: Forecast }): JSX.Element {
+  const { f } = p;
+  const last = f.links.at(-1) ?? 0;
+  return (
+    <div id="forecast">
+      {f.given && <Figure title="Share of whoever leads, ahead, over links made" name="forecast-leader" of={[f]} draw={(w) => ahead(f.links, f.leader, undefined, "leader", w)} table={table(f.links, f.leader)}
+        summary={`At ${count(last)} links whoever leads then holds ${between(f.leader, -1)} of them.`} />}
+      {f.given && <Figure title="Top ten together, ahead, over links made" name="forecast-top-ten" of={[f]} draw={(w) => ahead(f.links, f.topTen, undefined, "top ten", w)} table={table(f.links, f.topTen)}
+        summary={`At ${count(last)} links the ten largest together hold ${between(f.topTen, -1)}.`} />}
+      <Figure title="Leader: forecast made at 40 % of the log, and what happened" name="forecast-test" of={[f]} draw={(w) => ahead(f.past.links, f.past.leader, f.past.truth, "", w)} table={table(f.past.links, f.past.leader, f.past.truth)}
+        summary={`Made at ${count(f.past.links[0] ?? 0)} links for ${count(f.past.links.at(-1) ?? 0)}: the leader at ${between(f.past.leader, -1)}; it came to ${percent(f.past.truth.at(-1) ?? 0)}.`} />
+    </div>
+  );
+}
+
 export function EvidenceBlock(): JSX.Element | null {
   const e = doc.value?.book.evidence;
   const w = evidenceWords.value;
@@ -45,9 +70,8 @@ export function EvidenceBlock(): JSX.Element | null {
     <article class="evidence" aria-label="Evidence">
       <Section id="evidence" title="Evidence" aside={e.label || "from a link, names masked"}>
         <p class="verdict" id="evidence-verdict"><strong>{w?.heading ?? "…"}.</strong> {w?.meaning}</p>
-        {e.check.reasons.slice(e.verdict === "none" ? 1 : 0).map((r) => <p key={r} class="says">{r}</p>)}
-        {w && e.verdict !== "none" && <p class="caption">{w.explained}</p>}
-        {w && e.verdict === "none" && e.check.verdict === "does not fit" && Number((e["rule"] as { gain?: number } | undefined)?.gain ?? 0) > 0 && <p class="caption">{w.explained}</p>}
+        {e.check.reasons.slice(otherwise(e) ? 1 : 0).map((r) => <p key={r} class="says">{r}</p>)}
+        {w && (e.verdict !== "none" || Number((e["rule"] as { gain?: number } | undefined)?.gain ?? 0) > 0) && <p class="caption">{w.explained}</p>}
         <p class="caution">{tables.value?.caution}</p>
         <dl class="pairs" id="evidence-figures">
           <div><dt>Members</dt><dd>{count(e.members)}</dd></div>
@@ -59,8 +83,9 @@ export function EvidenceBlock(): JSX.Element | null {
           {e.margin.low !== null && <div><dt>Margin</dt><dd>{number(e.margin.estimate)} <small>95 %: {range(e.margin)}</small></dd></div>}
         </dl>
         {leader && <Origin m={leader} />}
+        {e.forecast && <Ahead f={e.forecast} />}
         <Figure
-          title="Shares as the log went" name="log-shares" class="plain" summary={`At ${count(e.members)} members the leader held ${percent(e.track.share.at(-1) ?? 0)} and the top four ${percent(e.top4)}.`}
+          title="Shares as the log went, over members" name="log-shares" summary={`At ${count(e.members)} members the leader held ${percent(e.track.share.at(-1) ?? 0)} and the top four ${percent(e.top4)}.`}
           of={[e]} draw={(width) => track(e.track, width)}
           table={() => ({ columns: ["members", "leader", "top four", "HHI"], rows: e.track.members.map((n, i) => [n, e.track.share[i] ?? 0, e.track.top4[i] ?? 0, e.track.hhi[i] ?? 0]) })}
         />

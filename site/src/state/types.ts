@@ -75,7 +75,23 @@ export interface Evidence {
   law: unknown;
   top: EvidenceMember[];
   track: { members: number[]; share: number[]; top4: number[]; hhi: number[] };
+  forecast?: Forecast | null;
   [field: string]: unknown;
+}
+
+/** Quantiles of a share at the sizes of a forecast. */
+export interface Band { q025: number[]; q10: number[]; q50: number[]; q90: number[]; q975: number[] }
+
+/** How shares go on by the extended rule; sizes in links. */
+export interface Forecast {
+  given: boolean;
+  links: number[];
+  leader: Band;
+  topTen: Band;
+  today: Band;
+  same: number;
+  factor: number;
+  past: { links: number[]; leader: Band; truth: number[]; inside: number };
 }
 
 export interface Casebook {
