@@ -94,10 +94,13 @@ func Condense(l *Rows, s *Study, label string) *Condensed {
 	h := s.history
 	received := h.Received()
 	spread := share.Of(received)
-	c := &Condensed{Label: label, Named: true, Rows: l.Read, Used: len(l.Time), LeftOut: map[string]int{}, Members: h.Members(), Links: spread.Links, Choices: h.Choices,
+	c := &Condensed{Label: label, Named: true, Rows: l.Read, Used: spread.Links, LeftOut: map[string]int{}, Members: h.Members(), Links: spread.Links, Choices: h.Choices,
 		PerArrival: round(h.PerArrival(), 6), Top4: spread.Top4, HHI: spread.HHI, Gini: spread.Gini, Verdict: s.Verdict, NoTop: s.NoTop, Rule: s.Rule.trimmed(), Law: s.Law, Draws: []Law{}, Classes: []Class{}, Notes: h.notes()}
 	for _, p := range l.Problems {
 		c.LeftOut[p.Reason] = p.Count
+	}
+	if h.LeftOut > 0 {
+		c.LeftOut[answers] = h.LeftOut
 	}
 	if s.Law != nil {
 		c.Ground, c.Margin = ranged(s.Ground), ranged(s.Margin)
@@ -133,6 +136,9 @@ func (s *Study) check(notes []string) Check {
 	return c
 }
 
+// answers is the reason for which replies are left out.
+const answers = "it answers an earlier link"
+
 // notes are what a reader must know of the log, each with its count.
 func (h *History) notes() []string {
 	out := []string{}
@@ -140,11 +146,17 @@ func (h *History) notes() []string {
 	if part := h.Unchosen - 1; part*50 > h.Members() {
 		out = append(out, fmt.Sprintf("%d %% of members first appear as somebody's target, not by choosing.", int(math.Round(100*float64(part)/float64(h.Members())))))
 	}
-	if h.Choices > 0 && h.ByNewcomers*10 < h.Choices*9 {
+	if h.Choices > 0 && !h.NewcomersOnly && h.ByNewcomers*10 < h.Choices*9 {
 		out = append(out, fmt.Sprintf("%d %% of choices are made by members already there, %d %% by newcomers.", int(math.Round(100-100*float64(h.ByNewcomers)/float64(h.Choices))), int(math.Round(100*float64(h.ByNewcomers)/float64(h.Choices)))))
 	}
-	if h.Replies*50 > links {
-		out = append(out, fmt.Sprintf("%d %% of all links answer an earlier link.", int(math.Round(100*float64(h.Replies)/float64(links)))))
+	switch all := links + h.LeftOut; {
+	case h.LeftOut > 0:
+		out = append(out, fmt.Sprintf("%d links that answer an earlier one, %d %% of all, are left out.", h.LeftOut, int(math.Round(100*float64(h.LeftOut)/float64(all)))))
+	case h.Replies*50 > all:
+		out = append(out, fmt.Sprintf("%d %% of all links answer an earlier link.", int(math.Round(100*float64(h.Replies)/float64(all)))))
+	}
+	if h.NewcomersOnly {
+		out = append(out, "Only the choices of newcomers are scored; the links of members already there count as links held.")
 	}
 	if h.Repeats > 0 {
 		out = append(out, fmt.Sprintf("%d links repeat a pair that is already linked; they count as choices of their own.", h.Repeats))

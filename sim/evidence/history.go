@@ -22,25 +22,44 @@ type History struct {
 	Unchosen       int // members that first appear as somebody's target
 	Repeats        int // links whose pair stood in the log before
 	Replies        int // links whose target had linked to their source before
+	LeftOut        int // of those, left out
+	Treatment
 }
 
 // NewHistory orders the rows.
-func NewHistory(l *Rows) *History {
+func NewHistory(l *Rows) *History { return NewHistoryOf(l, Treatment{}) }
+
+// NewHistoryOf orders the rows and treats them as asked.
+func NewHistoryOf(l *Rows, how Treatment) *History {
 	order := make([]int32, len(l.Time))
 	for i := range order {
 		order[i] = int32(i)
 	}
 	sort.SliceStable(order, func(a, b int) bool { return l.Time[order[a]] < l.Time[order[b]] })
-	h := &History{}
+	h := &History{Treatment: how}
 	number := make([]int32, len(l.Names))
 	for i := range number {
 		number[i] = -1
 	}
 	seen := map[uint64]bool{}
+	pairOf := func(a, b int32) uint64 { return uint64(a)<<32 | uint64(uint32(b)) }
 	last := 0.0
-	for i, row := range order {
-		if i == 0 || l.Time[row] != last {
-			h.Group = append(h.Group, int32(i))
+	for _, row := range order {
+		reply := seen[pairOf(l.Target[row], l.Source[row])]
+		again := seen[pairOf(l.Source[row], l.Target[row])]
+		seen[pairOf(l.Source[row], l.Target[row])] = true
+		if reply {
+			h.Replies++
+			if how.LeaveReplies {
+				h.LeftOut++
+				continue
+			}
+		}
+		if again {
+			h.Repeats++
+		}
+		if len(h.Target) == 0 || l.Time[row] != last {
+			h.Group = append(h.Group, int32(len(h.Target)))
 		}
 		last = l.Time[row]
 		for k, old := range [2]int32{l.Source[row], l.Target[row]} {
@@ -55,16 +74,8 @@ func NewHistory(l *Rows) *History {
 		}
 		s, t := number[l.Source[row]], number[l.Target[row]]
 		h.Source, h.Target = append(h.Source, s), append(h.Target, t)
-		if pair := uint64(s)<<32 | uint64(uint32(t)); seen[pair] {
-			h.Repeats++
-		} else {
-			seen[pair] = true
-		}
-		if seen[uint64(t)<<32|uint64(uint32(s))] {
-			h.Replies++
-		}
 	}
-	h.Group = append(h.Group, int32(len(order)))
+	h.Group = append(h.Group, int32(len(h.Target)))
 	h.countChoices()
 	return h
 }
@@ -89,7 +100,7 @@ func (h *History) Until(share float64) *History {
 	g = min(g+1, h.Groups())
 	links := h.Group[g]
 	members := sort.Search(h.Members(), func(j int) bool { return int(h.Arrived[j]) >= g })
-	p := &History{Names: h.Names[:members], Source: h.Source[:links], Target: h.Target[:links], Group: h.Group[:g+1], Arrived: h.Arrived[:members], Repeats: h.Repeats}
+	p := &History{Names: h.Names[:members], Source: h.Source[:links], Target: h.Target[:links], Group: h.Group[:g+1], Arrived: h.Arrived[:members], Repeats: h.Repeats, Treatment: h.Treatment}
 	p.countChoices()
 	return p
 }
@@ -100,7 +111,9 @@ func (h *History) Groups() int { return len(h.Group) - 1 }
 // Members returns how many members the log names.
 func (h *History) Members() int { return len(h.Names) }
 
-func (h *History) choice(i int32, group int) bool { return int(h.Arrived[h.Target[i]]) < group }
+func (h *History) choice(i int32, group int) bool {
+	return int(h.Arrived[h.Target[i]]) < group && (!h.NewcomersOnly || int(h.Arrived[h.Source[i]]) == group)
+}
 
 // PerArrival returns m, the choices per arrival.
 func (h *History) PerArrival() float64 {

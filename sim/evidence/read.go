@@ -10,6 +10,7 @@ import (
 	"strconv"
 	"strings"
 	"time"
+	"unicode/utf8"
 )
 
 // Limits of a log.
@@ -25,6 +26,13 @@ type Mapping struct {
 	Source int    `json:"source"`
 	Target int    `json:"target"`
 	Time   int    `json:"time"`
+	Treatment
+}
+
+// A Treatment says which links count as choices.
+type Treatment struct {
+	LeaveReplies  bool `json:"leaveReplies"`  // links that answer an earlier one are left out
+	NewcomersOnly bool `json:"newcomersOnly"` // only choices of members that arrive with them are scored; all links count as held
 }
 
 // A Preview is the first rows of a file and the guess how to read them.
@@ -56,7 +64,7 @@ const shown = 5
 
 // Look guesses how a file is to be read.
 func Look(data []byte) (Preview, error) {
-	data = strip(data)
+	data, latin := text(data)
 	if len(data) == 0 {
 		return Preview{}, errors.New("the file is empty")
 	}
@@ -78,6 +86,9 @@ func Look(data []byte) (Preview, error) {
 	p := Preview{Mapping: Mapping{Comma: string(comma), Time: -1, Source: -1, Target: -1}}
 	p.byName(rows[0])
 	p.byContent(rows, comma)
+	if latin {
+		p.Why += "; the letters are not UTF-8, so they are read as Latin-1"
+	}
 	for i, name := range rows[0] {
 		if p.Mapping.Header {
 			p.Columns = append(p.Columns, strings.TrimSpace(name))
@@ -178,7 +189,19 @@ func timeOrder(rows [][]string) []int {
 	return append(dates, rest...)
 }
 
-func strip(data []byte) []byte { return bytes.TrimPrefix(data, []byte("\ufeff")) }
+// text returns the letters of a file as UTF-8 without a byte order mark; a file that is not UTF-8 is taken for Latin-1
+// (ISO 8859-1), whose bytes are the first 256 characters of Unicode.
+func text(data []byte) (utf []byte, latin bool) {
+	data = bytes.TrimPrefix(data, []byte("\ufeff"))
+	if utf8.Valid(data) {
+		return data, false
+	}
+	out := make([]byte, 0, len(data)+len(data)/8)
+	for _, b := range data {
+		out = utf8.AppendRune(out, rune(b))
+	}
+	return out, true
+}
 
 // separator picks the sign that splits the first lines into the most columns, the same number in each.
 func separator(data []byte) rune {
@@ -243,10 +266,10 @@ func parseTime(cell string, comma rune) (float64, error) {
 // Read reads a log by a mapping. Rows that cannot be used are counted by reason, the first of them quoted, and reading
 // goes on. step is called with the share done.
 func Read(data []byte, m Mapping, step func(done float64) error) (*Rows, error) {
-	data = strip(data)
 	if len(data) > MaxBytes {
 		return nil, fmt.Errorf("the file has %d MiB; %d are allowed", len(data)>>20, MaxBytes>>20)
 	}
+	data, _ = text(data)
 	if m.Source < 0 || m.Target < 0 || m.Source == m.Target {
 		return nil, errors.New("choose two different columns, one for the source and one for the target of a link")
 	}

@@ -10,11 +10,11 @@ func TestLookGuesses(t *testing.T) {
 		data string
 		want Mapping
 	}{
-		"named":           {"time,source,target\n1,a,b\n2,c,a\n", Mapping{",", true, 1, 2, 0}},
-		"other order":     {"to;when;from\r\nb;2024-01-02;a\r\na;2024-01-03;c\r\n", Mapping{";", true, 2, 0, 1}},
-		"tabs, no header": {"a\tb\t2024-01-02T10:00:00Z\nc\ta\t2024-01-03T10:00:00Z\n", Mapping{"\t", false, 0, 1, 2}},
-		"bom, two only":   {"\ufeffsource,target\na,b\nc,a\n", Mapping{",", true, 0, 1, -1}},
-		"unknown header":  {"wer,wen,wann\na,b,2024-01-02\nc,a,2024-01-03\n", Mapping{",", true, 0, 1, 2}},
+		"named":           {"time,source,target\n1,a,b\n2,c,a\n", Mapping{Comma: ",", Header: true, Source: 1, Target: 2, Time: 0}},
+		"other order":     {"to;when;from\r\nb;2024-01-02;a\r\na;2024-01-03;c\r\n", Mapping{Comma: ";", Header: true, Source: 2, Target: 0, Time: 1}},
+		"tabs, no header": {"a\tb\t2024-01-02T10:00:00Z\nc\ta\t2024-01-03T10:00:00Z\n", Mapping{Comma: "\t", Header: false, Source: 0, Target: 1, Time: 2}},
+		"bom, two only":   {"\ufeffsource,target\na,b\nc,a\n", Mapping{Comma: ",", Header: true, Source: 0, Target: 1, Time: -1}},
+		"unknown header":  {"wer,wen,wann\na,b,2024-01-02\nc,a,2024-01-03\n", Mapping{Comma: ",", Header: true, Source: 0, Target: 1, Time: 2}},
 	} {
 		p, err := Look([]byte(c.data))
 		if err != nil || p.Mapping != c.want {
@@ -51,6 +51,56 @@ func TestReadCountsProblems(t *testing.T) {
 	}
 	if !strings.HasPrefix(l.Problems[1].First[0], "line 4: ") {
 		t.Errorf("quoted %q", l.Problems[1].First)
+	}
+}
+
+// Latin-1: byte 0xE9 is é, 0xDF is ß (ISO 8859-1).
+func TestLatinLetters(t *testing.T) {
+	data := []byte("time,source,target\n1,caf\xe9,Gro\xdfhandel\n2,x,caf\xe9\n")
+	p, err := Look(data)
+	if err != nil || !strings.Contains(p.Why, "Latin-1") {
+		t.Fatalf("%v, %q", err, p.Why)
+	}
+	l, err := Read(data, p.Mapping, nil)
+	if err != nil || len(l.Names) != 3 || l.Names[0] != "café" || l.Names[1] != "Großhandel" {
+		t.Errorf("%v, %q", err, l.Names)
+	}
+}
+
+// a-b, b-a (a reply), c-a, a-c (a reply), d-a, b-a again (a reply that repeats a pair): totals reconcile.
+func TestTreatments(t *testing.T) {
+	data := []byte("source,target,time\na,b,1\nb,a,2\nc,a,3\na,c,4\nd,a,5\nb,a,6\n")
+	p, err := Look(data)
+	if err != nil {
+		t.Fatal(err)
+	}
+	l, err := Read(data, p.Mapping, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	all := NewHistory(l)
+	if all.Replies != 3 || all.Repeats != 1 || len(all.Target) != 6 || all.Choices != 5 || all.ByNewcomers != 2 {
+		t.Errorf("%+v", all)
+	}
+	left := NewHistoryOf(l, Treatment{LeaveReplies: true})
+	if left.LeftOut != 3 || len(left.Target) != 3 || left.Choices != 2 || left.Members() != 4 || left.Groups() != 3 {
+		t.Errorf("%+v", left)
+	}
+	few := NewHistoryOf(l, Treatment{NewcomersOnly: true})
+	if few.Choices != 2 || len(few.Target) != 6 {
+		t.Errorf("%+v", few)
+	}
+	s, err := Examine(left, quiet)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := Condense(l, s, "six")
+	sum := c.Used
+	for _, n := range c.LeftOut {
+		sum += n
+	}
+	if c.Rows != 6 || sum != 6 || c.LeftOut[answers] != 3 {
+		t.Errorf("%d rows, %d used, left out %v", c.Rows, c.Used, c.LeftOut)
 	}
 }
 

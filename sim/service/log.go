@@ -65,13 +65,13 @@ func read(e *Engine, p wire.Packet, step Step) (reply, error) {
 		}
 		return reply{}, errors.New("nothing was read from the file; " + reason + ". Check separator and columns; dates are written like 2024-01-31, or take the order of rows as time")
 	}
-	e.rows, e.history, e.label = rows, evidence.NewHistory(rows), ask.Label
+	e.rows, e.history, e.label = rows, evidence.NewHistoryOf(rows, ask.Mapping.Treatment), ask.Label
 	received := e.history.Received()
 	s := share.Of(received)
 	if rows.Problems == nil {
 		rows.Problems = []evidence.Problem{}
 	}
-	return reply{body: ReadReport{rows.Read, len(rows.Time), rows.Problems, e.history.Members(), s.Links, e.history.Choices,
+	return reply{body: ReadReport{rows.Read, s.Links, rows.Problems, e.history.Members(), s.Links, e.history.Choices,
 		LogLeader{e.history.Names[s.Leader], received[s.Leader], s.Share}, s.Top4, s.HHI, s.Gini}}, nil
 }
 

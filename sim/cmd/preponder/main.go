@@ -2,7 +2,7 @@
 //
 //	preponder solve CASE [--entry k] [--curves] [--vary sharpness=0.5:8:0.1]
 //	preponder grow CASE [--entry k] [--log FILE.csv] [--degrees FILE.csv] [--graphml FILE.graphml]
-//	preponder read LOG.csv [--map source=..,target=..,time=..] [--condensed]
+//	preponder read LOG.csv[.gz] [--map source=..,target=..,time=..] [--leave-replies] [--newcomers-only] [--condensed]
 //	preponder outlook CASE [--entry k] [--runs 0-199] [--partial]
 //	preponder gather PART...
 //	preponder sample
@@ -22,6 +22,7 @@ import (
 	"strconv"
 	"strings"
 
+	"preponder/sim/evidence"
 	"preponder/sim/service"
 	"preponder/sim/wire"
 )
@@ -57,7 +58,9 @@ type call struct {
 	runs    string
 	mapping string
 	vary    string
-	args    []string
+
+	treatment evidence.Treatment
+	args      []string
 }
 
 func run(args []string, in io.Reader, out io.Writer) error {
@@ -81,6 +84,8 @@ func run(args []string, in io.Reader, out io.Writer) error {
 	flags.StringVar(&c.runs, "runs", "", "")
 	flags.StringVar(&c.vary, "vary", "", "")
 	flags.StringVar(&c.mapping, "map", "", "")
+	flags.BoolVar(&c.treatment.LeaveReplies, "leave-replies", false, "")
+	flags.BoolVar(&c.treatment.NewcomersOnly, "newcomers-only", false, "")
 	// Flags may stand before and after files.
 	rest := args[1:]
 	for len(rest) > 0 {

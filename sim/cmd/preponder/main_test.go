@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"compress/gzip"
 	"encoding/json"
 	"errors"
 	"os"
@@ -38,6 +39,18 @@ func TestWalkThrough(t *testing.T) {
 		return out
 	}
 	log := file("larkmoor.csv", must("sample"))
+	// Packed by gzip (RFC 1952) it says the same; cut off it is refused.
+	var packed bytes.Buffer
+	z := gzip.NewWriter(&packed)
+	if _, err := z.Write([]byte(must("sample"))); err != nil || z.Close() != nil {
+		t.Fatal(err)
+	}
+	if must("read", file("larkmoor.csv.gz", packed.String())) != must("read", log) {
+		t.Error("packed, the log says otherwise")
+	}
+	if _, err := answer(t, "", "read", file("cut.gz", packed.String()[:packed.Len()/2])); err == nil || !strings.Contains(err.Error(), "cannot be unpacked") {
+		t.Errorf("a file cut off: %v", err)
+	}
 	read := map[string]any{}
 	if err := json.Unmarshal([]byte(must("read", log, "--map", "source=source,target=3")), &read); err != nil {
 		t.Fatal(err)

@@ -1,8 +1,11 @@
 package main
 
 import (
+	"bytes"
+	"compress/gzip"
 	"encoding/json"
 	"fmt"
+	"io"
 	"slices"
 	"strconv"
 	"strings"
@@ -15,6 +18,9 @@ import (
 // read reads a log and prints what it says, or with --condensed a casebook that the page opens.
 func (c *call) read() error {
 	data, err := c.file()
+	if err == nil {
+		data, err = unpacked(data)
+	}
 	if err != nil {
 		return err
 	}
@@ -30,6 +36,7 @@ func (c *call) read() error {
 	if err := remap(&preview, c.mapping); err != nil {
 		return err
 	}
+	preview.Mapping.Treatment = c.treatment
 	if p, err = c.ask("read", map[string]any{"mapping": preview.Mapping, "label": c.args[0]}, column); err != nil {
 		return err
 	}
@@ -48,6 +55,25 @@ func (c *call) read() error {
 		return err
 	}
 	return c.print(b)
+}
+
+// unpacked returns what a file packed by gzip (RFC 1952) holds, any other as it is.
+func unpacked(data []byte) ([]byte, error) {
+	if !bytes.HasPrefix(data, []byte{0x1f, 0x8b}) {
+		return data, nil
+	}
+	z, err := gzip.NewReader(bytes.NewReader(data))
+	if err != nil {
+		return nil, fmt.Errorf("the file is packed and cannot be unpacked: %w", err)
+	}
+	out, err := io.ReadAll(io.LimitReader(z, evidence.MaxBytes+1))
+	if err != nil {
+		return nil, fmt.Errorf("the file is packed and cannot be unpacked: %w", err)
+	}
+	if len(out) > evidence.MaxBytes {
+		return nil, fmt.Errorf("unpacked the file has more than the %d MiB that are allowed; nothing was loaded", evidence.MaxBytes>>20)
+	}
+	return out, nil
 }
 
 // remap applies --map source=..,target=..,time=..; a column is named or numbered from 1.
@@ -102,10 +128,6 @@ func describe(r service.ReadReport, body json.RawMessage) (json.RawMessage, erro
 		return nil, err
 	}
 	e := s.Evidence
-	left := map[string]int{}
-	for _, p := range r.Problems {
-		left[p.Reason] = p.Count
-	}
 	top := []map[string]any{}
 	for _, m := range e.Top {
 		row := map[string]any{"id": m.ID, "links": m.Links, "arrived": m.Arrived}
@@ -118,7 +140,7 @@ func describe(r service.ReadReport, body json.RawMessage) (json.RawMessage, erro
 		top = append(top, row)
 	}
 	out := map[string]any{
-		"rows": r.Rows, "used": r.Used, "leftOut": left, "members": r.Members, "links": r.Links, "choices": r.Choices,
+		"rows": r.Rows, "used": r.Used, "leftOut": e.LeftOut, "members": r.Members, "links": r.Links, "choices": r.Choices,
 		"leader": map[string]any{"id": r.Leader.ID, "links": r.Leader.Links, "share": r.Leader.Share}, "top4": r.Top4, "hhi": r.HHI, "gini": r.Gini,
 		"verdict": e.Verdict, "heading": s.Heading, "meaning": s.Meaning, "caution": s.Caution,
 		"groundIntegral": e.Ground, "margin": e.Margin, "rule": e.Rule, "check": e.Check, "notes": e.Notes, "top": top,

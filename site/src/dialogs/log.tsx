@@ -19,7 +19,7 @@ function Choose(): JSX.Element {
         class="drop" onDragOver={(e) => { e.preventDefault(); e.currentTarget.dataset.over = ""; }} onDragLeave={(e) => { delete e.currentTarget.dataset.over; }}
         onDrop={(e) => { e.preventDefault(); delete e.currentTarget.dataset.over; const f = e.dataTransfer?.files[0]; if (f) void fromFile(f); }}
       >
-        <label class="field">Drop a file here, or choose one <input type="file" accept=".csv,.tsv,.txt,text/csv" onChange={(e) => { const f = e.currentTarget.files?.[0]; if (f) void fromFile(f); }} /></label>
+        <label class="field">Drop a file here, or choose one <input type="file" accept=".csv,.tsv,.txt,.gz,text/csv" onChange={(e) => { const f = e.currentTarget.files?.[0]; if (f) void fromFile(f); }} /></label>
       </div>
       <label class="field">Or paste rows <textarea ref={pasted} rows={4} spellcheck={false} placeholder={"time,source,target\n1,M1,M0"} /></label>
       <p class="buttons">
@@ -54,6 +54,8 @@ function Columns(p: { phase: Extract<LogPhase, { at: "map" }> }): JSX.Element {
           <select value={mapping.comma} onChange={(e) => void retake(p.phase, e.currentTarget.value)}>{separators.map(([v, n]) => <option key={v} value={v}>{n}</option>)}</select>
         </label>
         <Check label="The first row holds names" value={mapping.header} onChange={(v) => remap({ header: v })} />
+        <Check label="Leave out links that answer an earlier one" value={mapping.leaveReplies} onChange={(v) => remap({ leaveReplies: v })} />
+        <Check label="Score newcomers' choices only" value={mapping.newcomersOnly} onChange={(v) => remap({ newcomersOnly: v })} />
       </div>
       <div class="scroll" tabIndex={0} role="region" aria-label="First rows">
         <table>

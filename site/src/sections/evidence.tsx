@@ -4,6 +4,7 @@ import { ahead, track } from "../charts/charts";
 import { Figure } from "../charts/figure";
 import { doc, tables } from "../state/document";
 import { effect, signal } from "@preact/signals";
+import { again, lastRead } from "../state/log";
 import { engines } from "../state/results";
 import type { Band, Evidence, EvidenceMember, Forecast } from "../state/types";
 import { count, number, percent, range } from "../words/format";
@@ -60,6 +61,19 @@ function Ahead(p: { f: Forecast }): JSX.Element {
   );
 }
 
+/** Reads the log again, treated otherwise, as long as it is here. */
+function Treat(p: { e: Evidence }): JSX.Element | null {
+  const last = lastRead.value;
+  if (!last || last.file.label !== p.e.label) return null;
+  const { leaveReplies, newcomersOnly } = last.mapping;
+  return (
+    <p class="buttons">
+      <button type="button" onClick={() => void again({ leaveReplies: !leaveReplies })}>{leaveReplies ? "Take in links that answer an earlier one" : "Leave out links that answer an earlier one"}</button>
+      <button type="button" onClick={() => void again({ newcomersOnly: !newcomersOnly })}>{newcomersOnly ? "Score all choices" : "Score newcomers' choices only"}</button>
+    </p>
+  );
+}
+
 export function EvidenceBlock(): JSX.Element | null {
   const e = doc.value?.book.evidence;
   const w = evidenceWords.value;
@@ -104,6 +118,7 @@ export function EvidenceBlock(): JSX.Element | null {
           <summary>What was read</summary>
           <p class="says">{count(e.rows)} rows read, {count(e.used)} used{left.length > 0 ? `, left out: ${left.map(([reason, n]) => `${count(n)} because ${reason}`).join("; ")}` : ""}.</p>
           {e.notes.map((n) => <p key={n} class="says">{n}</p>)}
+          <Treat e={e} />
         </details>
       </Section>
     </article>

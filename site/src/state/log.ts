@@ -39,9 +39,30 @@ function failed(e: unknown, back: LogPhase): void {
   });
 }
 
+/** What a file packed by gzip (RFC 1952) holds, any other as it is; at most so many bytes and a few. */
+async function unpacked(bytes: Uint8Array<ArrayBuffer>, limit: number): Promise<Uint8Array<ArrayBuffer>> {
+  if (bytes[0] !== 0x1f || bytes[1] !== 0x8b) return bytes;
+  const parts: Uint8Array<ArrayBuffer>[] = [];
+  let size = 0;
+  const from = new Blob([bytes]).stream().pipeThrough(new DecompressionStream("gzip")).getReader();
+  for (;;) {
+    const { value, done } = await from.read();
+    if (done) break;
+    parts.push(value as Uint8Array<ArrayBuffer>);
+    if ((size += value.length) > limit) break;
+  }
+  return new Uint8Array(await new Blob(parts).arrayBuffer());
+}
+
 export async function take(label: string, bytes: Uint8Array<ArrayBuffer>): Promise<void> {
   logFault.value = undefined;
   const limit = tables.peek()?.limits.bytes ?? Infinity;
+  try {
+    bytes = await unpacked(bytes, limit);
+  } catch {
+    logFault.value = "The file is packed by gzip, but it is cut off or damaged. Nothing was loaded; pack it anew, or unpack it first.";
+    return;
+  }
   if (bytes.length > limit) {
     logFault.value = `The file has ${Math.round(bytes.length / 2 ** 20)} MiB; ${Math.round(limit / 2 ** 20)} are allowed. Nothing was loaded.`;
     return;
@@ -69,9 +90,25 @@ export function remap(m: Partial<Mapping>): void {
   if (p.at === "map") phase.value = { ...p, mapping: { ...p.mapping, ...m } };
 }
 
+/** The file read last and how, so that it can be read again otherwise; gone with the page. */
+export const lastRead = signal<Extract<LogPhase, { at: "map" }> | undefined>(undefined);
+
+/** Reads the same file again, treated otherwise. */
+export async function again(how: Partial<Mapping>): Promise<void> {
+  const p = lastRead.peek();
+  if (!p) return;
+  batch(() => {
+    logFault.value = undefined;
+    phase.value = { ...p, mapping: { ...p.mapping, ...how } };
+    dialog.value = "log";
+  });
+  await read();
+}
+
 export async function read(): Promise<void> {
   const p = phase.peek();
   if (p.at !== "map") return;
+  lastRead.value = p;
   stop = new AbortController();
   logFault.value = undefined;
   phase.value = { ...p, at: "reading", done: 0 };
@@ -135,5 +172,5 @@ function bookOf(s: Studied, label: string): Casebook {
     growth: { ...standard.growth, members: Math.max(2, s.evidence.members), links: Math.min(64, Math.max(1, Math.round(s.evidence.links / Math.max(1, s.evidence.members)))) },
     outlook: { ...standard.outlook, horizon: Math.min(4 * s.evidence.members, 1e7) },
   };
-  return { casebook: 1, title: label.replace(/\.[a-z]+$/i, "").replace(/[-_]/g, " "), entries: [s.entry ?? stand], evidence: s.evidence };
+  return { casebook: 1, title: label.replace(/\.gz$/i, "").replace(/\.[a-z]+$/i, "").replace(/[-_]/g, " "), entries: [s.entry ?? stand], evidence: s.evidence };
 }

@@ -248,6 +248,8 @@ export interface Mapping {
   source: number;
   target: number;
   time: number;
+  leaveReplies: boolean;
+  newcomersOnly: boolean;
 }
 
 export interface Preview {

@@ -1,10 +1,11 @@
 // Bad input, real input, no network, no WebGL, people without a mouse.
 import assert from "node:assert/strict";
 import { execFileSync } from "node:child_process";
-import { readFileSync } from "node:fs";
+import { readFileSync, writeFileSync } from "node:fs";
 import { createServer } from "node:http";
 import type { AddressInfo } from "node:net";
 import { after } from "node:test";
+import { gzipSync } from "node:zlib";
 import { closeBrowser, command, drawn, file, pageTest, put, root, says, text, violations } from "../harness";
 
 after(closeBrowser);
@@ -80,6 +81,32 @@ pageTest("a small log keeps its shares and says why nothing is estimated", {}, a
   await page.getByRole("button", { name: "Read the log" }).click();
   await says(page, "#evidence-verdict", /^No verdict\. The log holds \d+ members and \d+ choices; estimates need at least 100 and 200\. Shares are shown\./);
   assert.match(await text(page, "#evidence-figures"), /HHI/);
+});
+
+pageTest("a packed log with Latin-1 letters, semicolons and decimal commas; links that answer others are left out by one click", {}, async ({ page }) => {
+  const rows = ["wann;wer;wen"];
+  for (let i = 1; i <= 60; i++) rows.push(`${i},5;Stra\xdfe ${i};Caf\xe9 ${Math.floor(i / 3)}`, `${i},75;Caf\xe9 ${Math.floor(i / 3)};Stra\xdfe ${i}`);
+  const path = put("ugly.csv.gz", "");
+  writeFileSync(path, gzipSync(Buffer.from(rows.join("\r\n") + "\r\n", "latin1")));
+  await drawn(page);
+  await page.getByRole("button", { name: "Read a log" }).first().click();
+  await page.getByLabel("Drop a file here, or choose one").setInputFiles(path);
+  await says(page, "dialog", /Latin-1/);
+  assert.match(await text(page, "dialog"), /Straße 1/);
+  await page.getByRole("button", { name: "Read the log" }).click();
+  await says(page, "#evidence-verdict", /^No verdict\./);
+  await page.getByText("What was read").click();
+  assert.match(await text(page, "#evidence"), /120 rows read, 120 used\./);
+  assert.match(await text(page, "#evidence"), /50 % of all links answer an earlier link\./);
+  await page.getByRole("button", { name: "Leave out links that answer an earlier one" }).click();
+  await says(page, "#evidence", /120 rows read, 60 used, left out: 60 because it answers an earlier link\./);
+  await page.getByRole("button", { name: "Take in links that answer an earlier one" }).click();
+  await says(page, "#evidence", /120 rows read, 120 used\./);
+  // Cut off, it is refused with a sentence.
+  writeFileSync(path, gzipSync(Buffer.from(rows.join("\r\n"), "latin1")).subarray(0, 60));
+  await page.getByRole("button", { name: "Read a log" }).first().click();
+  await page.getByLabel("Drop a file here, or choose one").setInputFiles(path);
+  await says(page, "dialog", /packed by gzip, but it is cut off or damaged/);
 });
 
 pageTest("the signatures of the Debian keyring: counted right, and the plain rule does not hold", {}, async ({ page }) => {
