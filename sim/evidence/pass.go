@@ -44,6 +44,7 @@ type passer struct {
 	eta   []float64
 	terms Terms
 	plain bool
+	steep bool // the gradient is wanted
 
 	out      sums
 	w        []float64 // current weights, 0 before arrival
@@ -68,6 +69,8 @@ type passer struct {
 	kappa       float64
 	lnTickets   []float64
 	power       []float64
+	lnOf        []float64 // the same of every number of links met
+	powerOf     []float64
 	aged, idled [64]float64
 }
 
@@ -92,7 +95,7 @@ func recently(h *History, eta []float64, t Terms, half float64) sums {
 
 // newPasser returns one that has seen nothing yet, with room for so many members and groups.
 func newPasser(h *History, eta []float64, t Terms, w want, n, groups int) *passer {
-	p := &passer{h: h, eta: eta, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes,
+	p := &passer{h: h, eta: eta, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes, steep: w == slopes,
 		w: make([]float64, n), last: make([]float64, n), links: make([]int32, n), count: 1, growth: 1}
 	p.out = sums{exposure: make([]float64, n), chosen: make([]int32, n)}
 	p.kappa = math.Exp(t.LogKappa)
@@ -137,7 +140,7 @@ func (p *passer) choose(i int32, g int, w want) {
 	drop := func(k int32) {
 		barred++
 		z -= p.eta[k] * p.w[k]
-		if !p.plain {
+		if p.steep {
 			for f, x := range p.features(k) {
 				zx[f] -= p.eta[k] * p.w[k] * x
 			}
@@ -152,10 +155,9 @@ func (p *passer) choose(i int32, g int, w want) {
 		p.count *= p.growth
 	}
 	p.out.logLik += math.Log(p.w[t]) - math.Log(z)
-	x := p.features(t)
-	if !p.plain {
-		for f := range x {
-			p.out.gradient[f] += x[f] - zx[f]/z
+	if p.steep {
+		for f, x := range p.features(t) {
+			p.out.gradient[f] += x - zx[f]/z
 		}
 	}
 	if w == chances {
@@ -178,9 +180,6 @@ func (p *passer) barred(source int32, g int, f func(k int32)) {
 }
 
 func (p *passer) features(j int32) [features]float64 {
-	if p.plain {
-		return [features]float64{}
-	}
 	t := p.kappa + float64(p.links[j])
 	return [features]float64{p.lnTickets[j], p.terms.Alpha * p.kappa / t, -octaves[p.ageClass[j]], -octaves[p.idle[j]]}
 }
@@ -240,10 +239,11 @@ func (p *passer) set(j int32) {
 	if p.plain {
 		now = p.kappa + float64(p.links[j])
 	} else {
-		x := p.features(j)
 		now = p.power[j] * p.aged[p.ageClass[j]] * p.idled[p.idle[j]]
-		for f := range x {
-			p.zx[f] += p.eta[j] * now * x[f]
+		if p.steep {
+			for f, x := range p.features(j) {
+				p.zx[f] += p.eta[j] * now * x
+			}
 		}
 	}
 	p.out.exposure[j] += old * (p.s - p.last[j])
@@ -257,7 +257,7 @@ func (p *passer) set(j int32) {
 
 // unset takes j's weighted features out of the sums before anything it depends on changes.
 func (p *passer) unset(j int32) {
-	if p.plain || p.w[j] == 0 {
+	if !p.steep || p.w[j] == 0 {
 		return
 	}
 	for f, x := range p.features(j) {
@@ -291,8 +291,11 @@ func (p *passer) update(g int) {
 		p.unset(t)
 		p.links[t]++
 		if !p.plain {
-			p.lnTickets[t] = math.Log(p.kappa + float64(p.links[t]))
-			p.power[t] = math.Exp(p.terms.Alpha * p.lnTickets[t])
+			for d := len(p.lnOf); d <= int(p.links[t]); d++ {
+				p.lnOf = append(p.lnOf, math.Log(p.kappa+float64(d)))
+				p.powerOf = append(p.powerOf, math.Exp(p.terms.Alpha*p.lnOf[d]))
+			}
+			p.lnTickets[t], p.power[t] = p.lnOf[p.links[t]], p.powerOf[p.links[t]]
 		}
 		p.set(t)
 		if p.picks != nil {

@@ -2,6 +2,7 @@ package evidence
 
 import (
 	"math"
+	"slices"
 )
 
 // A Rule says what the log shows of the rule of growth.
@@ -49,7 +50,7 @@ func newMixed(h *History) *mixed {
 func (m *mixed) settle(t Terms, rounds, em int, tol float64) float64 {
 	last := math.Inf(-1)
 	for range rounds {
-		m.sums = pass(m.h, m.eta, t, slopes)
+		m.sums = pass(m.h, m.eta, t, exposures)
 		list, of := cells(m.sums.chosen, m.sums.exposure)
 		g := newGrid(list, true)
 		var l float64
@@ -92,7 +93,7 @@ func (m *mixed) climb(t Terms, free bool, step func() error) (Terms, float64, er
 		at := Terms{x[0], x[1], x[2], x[3]}
 		if free {
 			l := m.settle(at, 4, 12, 0.1)
-			return l, m.sums.gradient
+			return l, pass(m.h, m.eta, at, slopes).gradient
 		}
 		m.sums = pass(m.h, m.eta, at, slopes)
 		return m.sums.logLik, m.sums.gradient
@@ -207,28 +208,25 @@ func testPlain(h *History, step func(done float64) error) (rule Rule, plain, ext
 	}
 	rule = Rule{Bits: Bits{Fitness: perChoice(plain.logLik-equal, h.Choices)}, Kernel: 1}
 	rule.OpenShare, rule.OpenGain = openShare(h, plain, plainTerms)
-	best := math.Inf(-1)
-	var metric [features]float64
-	for start := range 2 {
-		ext := newMixed(h)
-		from := plainTerms
-		if start == 0 {
-			copy(ext.eta, plain.eta)
-			ext.weights = append([]float64(nil), plain.weights...)
-		} else {
-			var err error
-			if from, _, err = ext.climb(plainTerms, false, tick); err != nil {
-				return rule, nil, nil, terms, err
+	var best float64
+	if h.Choices <= largeLog {
+		extended, terms, best, err = fromTwo(h, plain, plainTerms, tick)
+	} else {
+		// A large log is searched from where the search in its first part ended.
+		part := h.Until(largeLog / 2 / float64(h.Choices))
+		before := newMixed(part)
+		before.settle(plainTerms, 12, 40, 0.02)
+		if _, terms, _, err = fromTwo(part, before, plainTerms, tick); err == nil {
+			extended = plain.copy()
+			if terms, _, err = extended.climb(terms, true, tick); err == nil {
+				best = extended.settle(terms, 8, 40, 0.02)
 			}
 		}
-		t, _, err := ext.climb(from, true, tick)
-		if err != nil {
-			return rule, nil, nil, terms, err
-		}
-		if l := ext.settle(t, 8, 40, 0.02); l > best {
-			best, terms, extended = l, t, ext
-		}
 	}
+	if err != nil {
+		return rule, nil, nil, terms, err
+	}
+	var metric [features]float64
 	rule.Gain = math.Max(0, best-plain.logLik)
 	rule.Bits.Extended = math.Max(rule.Bits.Fitness, perChoice(best-equal, h.Choices))
 	rule.Kernel, rule.Fading, rule.Idling = terms.Alpha, terms.Nu, terms.Mu
@@ -249,6 +247,37 @@ func testPlain(h *History, step func(done float64) error) (rule Rule, plain, ext
 		}
 	}
 	return rule, plain, extended, terms, nil
+}
+
+// largeLog is how many choices make a log that is searched in two steps.
+const largeLog = 80000
+
+// fromTwo fits the extended rule from two starts, the plain fit and equal fitness, and returns the better: there can be two
+// maxima far apart.
+func fromTwo(h *History, plain *mixed, plainTerms Terms, tick func() error) (best *mixed, terms Terms, l float64, err error) {
+	l = math.Inf(-1)
+	for start := range 2 {
+		ext := newMixed(h)
+		from := plainTerms
+		if start == 0 {
+			ext = plain.copy()
+		} else if from, _, err = ext.climb(plainTerms, false, tick); err != nil {
+			return nil, terms, l, err
+		}
+		t, _, err := ext.climb(from, true, tick)
+		if err != nil {
+			return nil, terms, l, err
+		}
+		if v := ext.settle(t, 8, 40, 0.02); v > l {
+			best, terms, l = ext, t, v
+		}
+	}
+	return best, terms, l, nil
+}
+
+// copy returns a fit that starts where m stands.
+func (m *mixed) copy() *mixed {
+	return &mixed{h: m.h, eta: slices.Clone(m.eta), weights: slices.Clone(m.weights)}
 }
 
 func perChoice(l float64, choices int) float64 { return l / float64(max(1, choices)) / math.Ln2 }

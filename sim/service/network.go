@@ -285,6 +285,36 @@ type Path struct {
 	Gini     []float64   `json:"gini"`
 	BetaMu   []wire.Num  `json:"betaMu"` // null where the theory does not cover the rule
 	Followed [][]float64 `json:"followed"`
+	Levels   [][]float64 `json:"levels"` // share of all links held within each of Bands
+}
+
+// Bands are the shares of the law, from the fittest on, within which links are counted over size.
+var Bands = []float64{0.001, 0.01, 0.1, 0.5}
+
+// levels returns the share of all links that members within each of Bands hold at these sizes, ascending.
+func levels(n *growth.Network, sizes []int32) [][]float64 {
+	band := make([]uint8, n.Members)
+	for j := range band {
+		for band[j] < uint8(len(Bands)) && n.Rank(j) > Bands[band[j]] {
+			band[j]++
+		}
+	}
+	held := make([]int, len(Bands)+1)
+	out := make([][]float64, len(Bands))
+	at := 0
+	for _, size := range sizes {
+		end := n.LinksBefore(int(size))
+		for _, j := range n.Targets[at:end] {
+			held[band[j]]++
+		}
+		at = end
+		within := 0
+		for b := range out {
+			within += held[b]
+			out[b] = append(out[b], float64(within)/float64(max(end, 1)))
+		}
+	}
+	return out
 }
 
 // columns returns the path as raw numbers, by the names they have in JSON.
@@ -303,6 +333,9 @@ func (p Path) columns() []wire.Column {
 	out := []wire.Column{{Name: "path.members", Int32: p.Members}, {Name: "path.leader", Int32: p.Leader}, short("share", p.Share), short("top4", p.Top4), short("hhi", p.HHI), short("gini", p.Gini), short("betaMu", mu)}
 	for i, f := range p.Followed {
 		out = append(out, short("followed."+strconv.Itoa(i), f))
+	}
+	for i, f := range p.Levels {
+		out = append(out, short("levels."+strconv.Itoa(i), f))
 	}
 	return out
 }
@@ -357,7 +390,7 @@ func grow(e *Engine, p wire.Packet, step Step) (reply, error) {
 			out.Ranking = append(out.Ranking, Standing{name(int(j)), j, float64(received[j]) / float64(s.Links), n.Energy[j]})
 		}
 		out.Reigns = path.Reigns
-		full := Path{path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Gini, make([]wire.Num, len(path.Members)), path.Followed}
+		full := Path{path.Members, path.Leader, path.Share, path.Top4, path.HHI, path.Gini, make([]wire.Num, len(path.Members)), path.Followed, levels(n, path.Members)}
 		for i := range full.BetaMu {
 			full.BetaMu[i] = wire.Num(math.NaN())
 		}

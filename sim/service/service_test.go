@@ -6,7 +6,9 @@ import (
 	"testing"
 
 	"preponder/sim/casebook"
+	"preponder/sim/growth"
 	"preponder/sim/internal/near"
+	"preponder/sim/law"
 	"preponder/sim/wire"
 )
 
@@ -154,5 +156,27 @@ func TestLawsAlone(t *testing.T) {
 	}
 	if got := ask("sketch", `{"casebook":{"casebook":1,"entries":[{"law":{"family":"power","theta":1}}]},"entry":0}`); got != `{"knots":[[0,0],[1,2]]}` {
 		t.Errorf("a straight law is sketched as %s", got)
+	}
+}
+
+// Links by level, against a recount at every size.
+func TestLevels(t *testing.T) {
+	n, err := growth.Grow(growth.Params{Law: law.Power{Theta: 1}, Sharpness: 3, Links: 2, Members: 3000, Seed: 5}, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	sizes := []int32{2, 10, 500, 3000}
+	got := levels(n, sizes)
+	for k, size := range sizes {
+		for b, within := range Bands {
+			held, all := 0, 0
+			for j, d := range n.Received(int(size)) {
+				all += int(d)
+				if n.Law.Cumulative(n.Energy[j]) <= within {
+					held += int(d)
+				}
+			}
+			near.Rel(t, "share held", got[b][k], float64(held)/float64(all), 1e-12)
+		}
 	}
 }

@@ -208,6 +208,27 @@ export function degrees(g: Grown, width: number): Element | undefined {
   return p.axes();
 }
 
+/** The levels whose links are counted over size, as the engine has them. */
+export const levelNames = ["fittest 0.1 %", "fittest 1 %", "fittest 10 %", "fitter half"];
+
+/** Who holds the links: the share of the fittest 0.1, 1, 10 and 50 % of the law, over size. */
+export function levels(g: Grown, width: number): Element | undefined {
+  const { members } = g.path;
+  const from = members.findIndex((n) => n >= 10);
+  const end = members.at(-1) ?? 10;
+  if (from < 0 || g.path.levels.length === 0 || end <= 10) return undefined;
+  const p = new Plane({ width, height: 170, margin: { left: 40, right: 82, bottom: 24, top: 10 }, x: { domain: [members[from] ?? 10, end], log: true, ticks: decades(members[from] ?? 10, end), format: count }, y: { domain: [0, 1], ticks: 3, format: percent } });
+  let below = members.map(() => 0), label = -Infinity;
+  g.path.levels.forEach((level, i) => {
+    const at = members.map((x, k) => ({ x, low: below[k] ?? 0, high: level[k] ?? 0 })).slice(from);
+    p.area(at, { fill: css(`r${[0, 2, 4, 6][i] ?? 6}`), opacity: 0.85 });
+    below = level;
+  });
+  p.grid(line);
+  g.path.levels.forEach((level, i) => p.text({ x: end, y: (label = Math.max(level.at(-1) ?? 0, label + 0.1)) }, (levelNames[i] ?? "").replace("fittest ", "").replace("fitter ", ""), { dx: 6, fill: ink }));
+  return p.axes();
+}
+
 /** beta mu as it was counted at every size, on its way to that of endless growth. */
 export function potentialOverSize(g: Grown, limit: number | null, width: number): Element | undefined {
   const path = points(g.path.members, g.path.betaMu).filter((q) => q.x >= 10);

@@ -2,7 +2,7 @@
 import { signal } from "@preact/signals";
 import type { JSX } from "preact";
 import { useEffect, useState } from "preact/hooks";
-import { degrees, exponent, fan, gauge, occupation, potential, potentialOverSize, shares } from "../charts/charts";
+import { degrees, exponent, fan, gauge, levelNames, levels, occupation, potential, potentialOverSize, shares } from "../charts/charts";
 import { download, Figure } from "../charts/figure";
 import { Check, Progress, Slider } from "../controls/controls";
 import { doc, editEntry, tables } from "../state/document";
@@ -130,6 +130,10 @@ export function SharesSection(): JSX.Element {
               of={[g, standing()?.betaMu]} draw={(w) => potentialOverSize(g, standing()?.betaMu ?? null, w)} table={() => ({ columns: ["members", "beta mu"], rows: g.path.members.map((n, i) => [n, g.path.betaMu[i] ?? ""]) })}
             />
           </div>
+          {g.from === 1 && <Figure
+            title="Links held by the fittest 0.1, 1, 10 and 50 % of the law" name="levels" every={quick.value ? 200 : 0} summary={`At ${count(g.members)} members ${g.path.levels.map((l, i) => `the ${levelNames[i]} hold ${percent(l.at(-1) ?? 0)}`).join(", ")} of all links.`}
+            of={[g]} draw={(w) => levels(g, w)} table={() => ({ columns: ["members", ...levelNames], rows: g.path.members.map((n, i) => [n, ...g.path.levels.map((l) => l[i] ?? 0)]) })}
+          />}
           <dl class="pairs">
             <div><dt>Top four together (CR4)</dt><dd>{percent(g.top4)}</dd></div>
             <div><dt>HHI</dt><dd>{number(g.hhi)} <small>points of 10,000</small></dd></div>

@@ -111,15 +111,15 @@ export function cancelGrowth(): void {
 
 /** Puts shares over size, which come as raw numbers, where they have their names. */
 function withPath(r: Reply<Grown>): Grown {
-  const path: Record<string, unknown> = {}, followed: number[][] = [];
+  const path: Record<string, unknown> = {}, lists: Record<string, number[][]> = { followed: [], levels: [] };
   for (const c of r.columns) {
     const [part, name = "", index] = c.name.split(".");
     if (part !== "path") continue;
     const list = Array.from(c.data, (v) => (Number.isFinite(v) ? v : null));
     if (index === undefined) path[name] = list;
-    else followed[Number(index)] = list as number[];
+    else (lists[name] ??= [])[Number(index)] = list as number[];
   }
-  return { ...r.body, path: { ...path, followed } as unknown as Grown["path"] };
+  return { ...r.body, path: { ...path, ...lists } as unknown as Grown["path"] };
 }
 
 function takeGrown(r: Reply<Grown>, key: string, before: Grown | undefined): void {

@@ -201,7 +201,7 @@ export interface Grown {
   betaMuAtSize: number | null;
   ranking: { id: string; member: number; share: number; energy: number }[];
   reigns: { leader: number; from: number }[];
-  path: { members: number[]; leader: number[]; share: number[]; top4: number[]; hhi: number[]; gini: number[]; betaMu: (number | null)[]; followed: number[][] };
+  path: { members: number[]; leader: number[]; share: number[]; top4: number[]; hhi: number[]; gini: number[]; betaMu: (number | null)[]; followed: number[][]; levels: number[][] };
   tail: { links: number[]; share: number[] };
   counted?: { eps: number; n: number; error: number; members: number }[]; // none where the theory does not cover the rule
   digest?: string;
