@@ -48,15 +48,27 @@ func newMixed(h *History) *mixed {
 
 // settle alternates the pass over the log and the law until the likelihood moves less than tol.
 func (m *mixed) settle(t Terms, rounds, em int, tol float64) float64 {
+	return m.alternate(t, rounds, em, tol, exposures)
+}
+
+// alternate is settle with what is wanted of the last pass. The gradient belongs to the fitness that pass was made with.
+func (m *mixed) alternate(t Terms, rounds, em int, tol float64, final want) float64 {
 	last := math.Inf(-1)
-	for range rounds {
-		m.sums = pass(m.h, m.eta, t, exposures)
+	for round := range rounds {
+		w := exposures
+		if round == rounds-1 {
+			w = final
+		}
+		m.sums = pass(m.h, m.eta, t, w)
 		list, of := cells(m.sums.chosen, m.sums.exposure)
 		g := newGrid(list, true)
 		var l float64
 		m.weights, l = g.free(list, m.weights, em, 0.002)
 		m.logLik = m.sums.logLik + l
 		if math.Abs(m.logLik-last) < tol {
+			if w != final {
+				m.sums = pass(m.h, m.eta, t, final)
+			}
 			break
 		}
 		last = m.logLik
@@ -92,8 +104,8 @@ func (m *mixed) climb(t Terms, free bool, step func() error) (Terms, float64, er
 	value := func(x [features]float64) (float64, [features]float64) {
 		at := Terms{x[0], x[1], x[2], x[3]}
 		if free {
-			l := m.settle(at, 4, 12, 0.1)
-			return l, pass(m.h, m.eta, at, slopes).gradient
+			l := m.alternate(at, 4, 12, 0.1, slopes)
+			return l, m.sums.gradient
 		}
 		m.sums = pass(m.h, m.eta, at, slopes)
 		return m.sums.logLik, m.sums.gradient
@@ -213,7 +225,7 @@ func testPlain(h *History, step func(done float64) error) (rule Rule, plain, ext
 		extended, terms, best, err = fromTwo(h, plain, plainTerms, tick)
 	} else {
 		// A large log is searched from where the search in its first part ended.
-		part := h.Until(largeLog / 2 / float64(h.Choices))
+		part := h.Until(float64(largeLog) / 2 / float64(h.Choices))
 		before := newMixed(part)
 		before.settle(plainTerms, 12, 40, 0.02)
 		if _, terms, _, err = fromTwo(part, before, plainTerms, tick); err == nil {
@@ -249,8 +261,8 @@ func testPlain(h *History, step func(done float64) error) (rule Rule, plain, ext
 	return rule, plain, extended, terms, nil
 }
 
-// largeLog is how many choices make a log that is searched in two steps.
-const largeLog = 80000
+// largeLog is how many choices make a log that is searched in two steps; the tests lower it.
+var largeLog = 80000
 
 // fromTwo fits the extended rule from two starts, the plain fit and equal fitness, and returns the better: there can be two
 // maxima far apart.

@@ -76,7 +76,7 @@ func TestPlainRuleDenied(t *testing.T) {
 	} {
 		c.w.seed = 7
 		s, _ := examine(t, c.w)
-		if s.Verdict != None || s.Rule.Plain {
+		if s.Verdict != Forecasted && s.Verdict != None || s.Rule.Plain {
 			t.Errorf("%s: %s, gain %.1f", c.name, s.Verdict, s.Rule.Gain)
 		}
 		if c.read != nil {
@@ -85,6 +85,34 @@ func TestPlainRuleDenied(t *testing.T) {
 				t.Errorf("%s: led by %s", c.name, s.Rule.Leading)
 			}
 		}
+	}
+}
+
+// Large logs are searched from where the search in their first part ended: to the same terms and the same gain, and no
+// plain log is denied for it.
+func TestLargeLogsLikeSmallOnes(t *testing.T) {
+	search := func(w world, large int) Rule {
+		was := largeLog
+		largeLog = large
+		defer func() { largeLog = was }()
+		rule, _, _, _, err := testPlain(NewHistory(w.grow()), func(float64) error { return nil })
+		if err != nil {
+			t.Fatal(err)
+		}
+		return rule
+	}
+	for _, w := range []world{{n: 5000, m: 2, fitness: betaFitness(2), alpha: 1, mu: .2, seed: 7}, {n: 5000, m: 2, fitness: betaFitness(2), alpha: 1.3, seed: 7}} {
+		small, large := search(w, 80000), search(w, 5000)
+		t.Logf("%+v\n%+v", small, large)
+		near.Abs(t, "gain", large.Gain, small.Gain, 0.1*small.Gain+6)
+		near.Abs(t, "kernel", large.Kernel, small.Kernel, 0.1)
+		near.Abs(t, "idling", large.Idling, small.Idling, 0.06)
+		if large.Plain {
+			t.Errorf("taken for plain: %+v", large)
+		}
+	}
+	if r := search(world{n: 5000, m: 2, fitness: betaFitness(3), alpha: 1, seed: 8}, 5000); !r.Plain {
+		t.Errorf("a plain log is denied: %+v", r)
 	}
 }
 
