@@ -98,7 +98,7 @@ function LogBrief(p: { book: string; ev: Evidence; heading: string; meaning: str
         <p>The link log{ev.label ? ` ${ev.label}` : ""}, as it was read; no entry of the casebook grows from it.</p>
       </header>
       <LogPart ev={ev} heading={p.heading} meaning={p.meaning} alone />
-      <div class="charts">
+      <div class="charts four">
         <figure><figcaption>Shares as the log went, over members</figcaption><Drawn of={ev} draw={(x) => track(ev.track, x)} /></figure>
         {f?.given && <figure><figcaption>Whoever leads, to {count(f.links.at(-1) ?? 0)} links</figcaption><Drawn of={f} draw={(x) => ahead(f.links, f.leader, undefined, "leader", x)} /></figure>}
         {f && <figure><figcaption>The test on the log's own past, over links</figcaption><Drawn of={f} draw={(x) => ahead(f.past.links, f.past.leader, f.past.truth, "", x)} /></figure>}

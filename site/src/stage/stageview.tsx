@@ -4,7 +4,7 @@ import { effect, signal } from "@preact/signals";
 import { useEffect, useRef } from "preact/hooks";
 import { Stage, type StageSettings } from "../engine/stage";
 import { column } from "../engine/wire";
-import { current } from "../state/document";
+import { current, doc } from "../state/document";
 import { network, paintFor } from "../state/edges";
 import { engines, grown, sentenceOf, solved } from "../state/results";
 import type { MemberReport } from "../state/types";
@@ -332,11 +332,13 @@ function LeverTag(): JSX.Element | null {
 export function StageView(p: { source: StageSource }): JSX.Element {
   const { host, canvas } = useStage(p.source);
   const s = solved.value?.value;
+  // Beside a log the picture says of what it is, unless it grows from that log.
+  const apart = Boolean(doc.value?.book.evidence) && current.value?.entry.growth.start !== "evidence";
   return (
     <div class="stage" id="stage">
       <header>
         <div>
-          {projector.value && <p class="case">{current.value?.entry.title}</p>}
+          {(projector.value || apart) && <p class="case">{current.value?.entry.title}</p>}
           <h2>{s?.verdict.heading ?? "Preponder"}</h2>
           <p class="line">{s?.verdict.line}</p>
         </div>
