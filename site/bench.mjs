@@ -11,6 +11,14 @@ const root = here("..").pathname;
 const flags = ["--headless", "--no-sandbox", "--disable-quic", "--no-first-run", "--disable-background-networking", "--disable-component-update", "--disable-sync", "--use-gl=angle", "--use-angle=swiftshader", "--enable-unsafe-swiftshader"];
 const median = (v) => [...v].sort((a, b) => a - b)[Math.floor(v.length / 2)];
 
+if (process.argv[2] === "evidence") { // the calibration study: networks a setting, and their size
+  const [networks = "60", size = "2000"] = process.argv.slice(3);
+  const study = spawnSync("go", ["test", "./sim/evidence", "-run", "Calibration", "-v", "-timeout", "0", "-networks", networks, "-size", size], { cwd: root, encoding: "utf8" });
+  console.log(`calibration, ${networks} networks a setting, ${size} members, 2 links a newcomer`);
+  for (const [, line] of study.stdout.matchAll(/calibration_test\.go:\d+: (.*)/g)) console.log(`  ${line}`);
+  process.exit(study.status);
+}
+
 console.log("sizes");
 for (const name of ["engine", "stage"]) {
   const bytes = readFileSync(here(`build/${name}.wasm`));

@@ -32,7 +32,7 @@ func TestWeights(t *testing.T) {
 	for i, e := range eps {
 		want := math.Exp(math.Max(-86, -4*(e-20)))
 		at, next := math.Float32frombits(uint32(w[i])<<16), math.Float32frombits(uint32(w[i])<<16+1<<16)
-		if float64(at) > want*(1-1e-7) || float64(next) < want*(1-5e-7) {
+		if float64(at) > want*(1-3e-7) || float64(next) < want*(1-1e-6) {
 			t.Fatalf("exp(%g) = %g is said to lie between %g and %g", -4*(e-20), want, at, next)
 		}
 	}
