@@ -299,8 +299,8 @@ func newFuture(h *History, m *mixed, t Terms, half, more float64) *future {
 	for j, picked := range f.base.picks {
 		f.base.picks[j] = slices.Clip(picked)
 	}
-	for j, d := range f.base.links[:h.Members()] {
-		if d > f.base.links[f.leader] {
+	for j := range h.Members() {
+		if f.base.at[j].links > f.base.at[f.leader].links {
 			f.leader = int32(j)
 		}
 	}
@@ -351,7 +351,7 @@ func (f *future) path(number uint32) (shares [3][]float64, still bool) {
 	at, size := int(unit()*float64(len(f.starts)-1)), 0
 	for {
 		for ; size < len(f.sizes) && len(h.Target) >= int(f.sizes[size]); size++ {
-			top := largest(p.links, 10)
+			top := largest(p.received(), 10)
 			all := float64(len(h.Target))
 			sum := 0
 			for _, d := range top {
@@ -359,8 +359,8 @@ func (f *future) path(number uint32) (shares [3][]float64, still bool) {
 			}
 			shares[0] = append(shares[0], float64(top[0])/all)
 			shares[1] = append(shares[1], float64(sum)/all)
-			shares[2] = append(shares[2], float64(p.links[f.leader])/all)
-			still = p.links[f.leader] == top[0]
+			shares[2] = append(shares[2], float64(p.at[f.leader].links)/all)
+			still = p.at[f.leader].links == top[0]
 		}
 		if size == len(f.sizes) {
 			if f.seen != nil {
@@ -431,16 +431,26 @@ func (p *passer) take(source int32, unit func() float64) int32 {
 	return -1
 }
 
+// received returns the links each member has received.
+func (p *passer) received() []int32 {
+	v := make([]int32, len(p.at))
+	for j := range v {
+		v[j] = p.at[j].links
+	}
+	return v
+}
+
 // clone returns a passer that goes on from here with another history and fitness, and draws targets.
 func (p *passer) clone(h *History, eta []float64) *passer {
 	c := *p
-	c.h, c.eta, c.plain = h, eta, false
-	c.w, c.last, c.links = slices.Clone(p.w), slices.Clone(p.last), slices.Clone(p.links)
-	c.ageClass, c.idle, c.active = slices.Clone(p.ageClass), slices.Clone(p.idle), slices.Clone(p.active)
-	c.lnTickets, c.power, c.picks = slices.Clone(p.lnTickets), slices.Clone(p.power), slices.Clone(p.picks)
+	c.h, c.steep = h, false
+	c.at, c.lnOf, c.powerOf, c.picks = slices.Clone(p.at), slices.Clone(p.lnOf), slices.Clone(p.powerOf), slices.Clone(p.picks)
+	for j := range c.at {
+		c.at[j].eta = eta[j]
+	}
 	c.ageDue, c.idleDue = p.ageDue.clone(), p.idleDue.clone()
 	c.tree = tree.New(len(eta))
-	c.tree.Fill(len(eta), func(j int) float64 { return eta[j] * c.w[j] })
+	c.tree.Fill(len(eta), func(j int) float64 { return eta[j] * c.at[j].w })
 	return &c
 }
 

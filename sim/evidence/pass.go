@@ -41,37 +41,40 @@ const (
 // A passer walks the log once, keeping Z = sum eta_j w_j and its derivatives by increments.
 type passer struct {
 	h     *History
-	eta   []float64
 	terms Terms
 	plain bool
 	steep bool // the gradient is wanted
 
-	out      sums
-	w        []float64 // current weights, 0 before arrival
-	last     []float64 // S when E_j was last brought up to date
-	s        float64   // sum of 1/Z over choices so far
-	count    float64   // what the next choice counts, 1 without drift
-	growth   float64   // by which that grows from choice to choice
-	z        float64
-	zx       [features]float64
-	links    []int32 // received so far
-	ageClass []int16
-	idle     []int16
-	active   []int32   // group of last activity
-	picks    [][]int32 // earlier picks of each source, nil where pairs repeat
-	ageDue   calendar
-	idleDue  calendar
-	here     int        // members present
-	tree     *tree.Tree // of eta w, where targets are to be drawn
+	out     sums
+	at      []standing
+	s       float64 // sum of 1/Z over choices so far
+	count   float64 // what the next choice counts, 1 without drift
+	growth  float64 // by which that grows from choice to choice
+	z       float64
+	zx      [features]float64
+	picks   [][]int32 // earlier picks of each source, nil where pairs repeat
+	ageDue  calendar
+	idleDue calendar
+	here    int        // members present
+	tree    *tree.Tree // of eta w, where targets are to be drawn
 
-	// Kept so that a change of weight costs no logarithm: ln(kappa + d) and (kappa + d)^alpha of every member, and the
-	// factors of the half-octaves of age and idleness.
+	// Kept so that a change of weight costs no logarithm: ln(kappa + d) and (kappa + d)^alpha of every number of links d met,
+	// and the factors of the half-octaves of age and idleness.
 	kappa       float64
-	lnTickets   []float64
-	power       []float64
-	lnOf        []float64 // the same of every number of links met
+	lnOf        []float64
 	powerOf     []float64
 	aged, idled [64]float64
+}
+
+// A standing is what the walk knows of a member, in one place of memory.
+type standing struct {
+	eta       float64
+	w         float64 // its weight now, 0 before arrival
+	exposure  float64 // up to the moment when S was last
+	last      float64
+	links     int32 // received so far
+	active    int32 // group of last activity
+	age, idle int16 // half-octaves
 }
 
 // pass evaluates the conditional likelihood. Cost: O(links + members) plain; the half-octaves add O(log) changes a
@@ -95,12 +98,14 @@ func recently(h *History, eta []float64, t Terms, half float64) sums {
 
 // newPasser returns one that has seen nothing yet, with room for so many members and groups.
 func newPasser(h *History, eta []float64, t Terms, w want, n, groups int) *passer {
-	p := &passer{h: h, eta: eta, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes, steep: w == slopes,
-		w: make([]float64, n), last: make([]float64, n), links: make([]int32, n), count: 1, growth: 1}
+	p := &passer{h: h, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes, steep: w == slopes,
+		at: make([]standing, n), count: 1, growth: 1}
+	for j := range p.at {
+		p.at[j].eta = eta[j]
+	}
 	p.out = sums{exposure: make([]float64, n), chosen: make([]int32, n)}
 	p.kappa = math.Exp(t.LogKappa)
 	if !p.plain {
-		p.ageClass, p.idle, p.active = make([]int16, n), make([]int16, n), make([]int32, n)
 		p.ageDue, p.idleDue = newCalendar(n+1), newCalendar(groups+1)
 		p.prepare()
 	}
@@ -126,8 +131,9 @@ func (p *passer) run(w want) sums {
 		}
 		p.update(g)
 	}
-	for j := range p.w {
-		p.out.exposure[j] += p.w[j] * (p.s - p.last[j])
+	for j := range p.out.exposure {
+		m := &p.at[j]
+		p.out.exposure[j] = m.exposure + m.w*(p.s-m.last)
 	}
 	return p.out
 }
@@ -139,29 +145,29 @@ func (p *passer) choose(i int32, g int, w want) {
 	barred := 0
 	drop := func(k int32) {
 		barred++
-		z -= p.eta[k] * p.w[k]
+		z -= p.at[k].eta * p.at[k].w
 		if p.steep {
 			for f, x := range p.features(k) {
-				zx[f] -= p.eta[k] * p.w[k] * x
+				zx[f] -= p.at[k].eta * p.at[k].w * x
 			}
 		}
 	}
 	p.barred(src, g, drop)
-	p.barred(src, g, func(k int32) { p.out.exposure[k] -= p.count * p.w[k] / z })
+	p.barred(src, g, func(k int32) { p.at[k].exposure -= p.count * p.at[k].w / z })
 	p.s += p.count / z
 	p.out.chosen[t]++
 	if p.out.recent != nil {
 		p.out.recent[t] += p.count
 		p.count *= p.growth
 	}
-	p.out.logLik += math.Log(p.w[t]) - math.Log(z)
+	p.out.logLik += math.Log(p.at[t].w) - math.Log(z)
 	if p.steep {
 		for f, x := range p.features(t) {
 			p.out.gradient[f] += x - zx[f]/z
 		}
 	}
 	if w == chances {
-		p.out.chance = append(p.out.chance, p.eta[t]*p.w[t]/z)
+		p.out.chance = append(p.out.chance, p.at[t].eta*p.at[t].w/z)
 		p.out.present = append(p.out.present, int32(p.here-barred))
 	}
 }
@@ -180,18 +186,13 @@ func (p *passer) barred(source int32, g int, f func(k int32)) {
 }
 
 func (p *passer) features(j int32) [features]float64 {
-	t := p.kappa + float64(p.links[j])
-	return [features]float64{p.lnTickets[j], p.terms.Alpha * p.kappa / t, -octaves[p.ageClass[j]], -octaves[p.idle[j]]}
+	t := p.kappa + float64(p.at[j].links)
+	return [features]float64{p.lnOf[p.at[j].links], p.terms.Alpha * p.kappa / t, -octaves[p.at[j].age], -octaves[p.at[j].idle]}
 }
 
 // prepare fills the tables of the extended rule.
 func (p *passer) prepare() {
-	n := len(p.w)
-	p.lnTickets, p.power = make([]float64, n), make([]float64, n)
-	first := math.Exp(p.terms.Alpha * p.terms.LogKappa)
-	for j := range n {
-		p.lnTickets[j], p.power[j] = p.terms.LogKappa, first
-	}
+	p.lnOf, p.powerOf = []float64{p.terms.LogKappa}, []float64{math.Exp(p.terms.Alpha * p.terms.LogKappa)}
 	for c := range p.aged {
 		p.aged[c] = math.Exp(-p.terms.Nu * octaves[c])
 		p.idled[c] = math.Exp(-p.terms.Mu * octaves[c])
@@ -234,34 +235,35 @@ func classOf(x int) int16 {
 
 // set brings member j's weight up to date.
 func (p *passer) set(j int32) {
-	old := p.w[j]
+	m := &p.at[j]
+	old := m.w
 	var now float64
 	if p.plain {
-		now = p.kappa + float64(p.links[j])
+		now = p.kappa + float64(m.links)
 	} else {
-		now = p.power[j] * p.aged[p.ageClass[j]] * p.idled[p.idle[j]]
+		now = p.powerOf[m.links] * p.aged[m.age] * p.idled[m.idle]
 		if p.steep {
 			for f, x := range p.features(j) {
-				p.zx[f] += p.eta[j] * now * x
+				p.zx[f] += m.eta * now * x
 			}
 		}
 	}
-	p.out.exposure[j] += old * (p.s - p.last[j])
-	p.last[j] = p.s
-	p.z += p.eta[j] * (now - old)
-	p.w[j] = now
+	m.exposure += old * (p.s - m.last)
+	m.last = p.s
+	p.z += m.eta * (now - old)
+	m.w = now
 	if p.tree != nil {
-		p.tree.Set(int(j), p.eta[j]*now)
+		p.tree.Set(int(j), m.eta*now)
 	}
 }
 
 // unset takes j's weighted features out of the sums before anything it depends on changes.
 func (p *passer) unset(j int32) {
-	if !p.steep || p.w[j] == 0 {
+	if !p.steep || p.at[j].w == 0 {
 		return
 	}
 	for f, x := range p.features(j) {
-		p.zx[f] -= p.eta[j] * p.w[j] * x
+		p.zx[f] -= p.at[j].eta * p.at[j].w * x
 	}
 }
 
@@ -271,11 +273,11 @@ func (p *passer) age(g int) {
 		return
 	}
 	p.idleDue.drain(g, func(j int32) {
-		if class := classOf(g - int(p.active[j])); class != p.idle[j] {
+		if class := classOf(g - int(p.at[j].active)); class != p.at[j].idle {
 			p.unset(j)
-			p.idle[j] = class
+			p.at[j].idle = class
 			p.set(j)
-			p.idleDue.put(int(p.active[j])+leaves(class), j)
+			p.idleDue.put(int(p.at[j].active)+leaves(class), j)
 		}
 	})
 }
@@ -289,13 +291,12 @@ func (p *passer) update(g int) {
 			p.touch(j, g)
 		}
 		p.unset(t)
-		p.links[t]++
+		p.at[t].links++
 		if !p.plain {
-			for d := len(p.lnOf); d <= int(p.links[t]); d++ {
+			for d := len(p.lnOf); d <= int(p.at[t].links); d++ {
 				p.lnOf = append(p.lnOf, math.Log(p.kappa+float64(d)))
 				p.powerOf = append(p.powerOf, math.Exp(p.terms.Alpha*p.lnOf[d]))
 			}
-			p.lnTickets[t], p.power[t] = p.lnOf[p.links[t]], p.powerOf[p.links[t]]
 		}
 		p.set(t)
 		if p.picks != nil {
@@ -306,10 +307,10 @@ func (p *passer) update(g int) {
 
 // touch makes j present and active in group g.
 func (p *passer) touch(j int32, g int) {
-	if p.w[j] == 0 {
+	if p.at[j].w == 0 {
 		if !p.plain {
 			p.ageDue.put(int(j)+leaves(0), j)
-			p.active[j] = int32(g)
+			p.at[j].active = int32(g)
 			p.idleDue.put(g+leaves(0), j)
 		}
 		p.set(j)
@@ -317,13 +318,13 @@ func (p *passer) touch(j int32, g int) {
 		p.grow()
 		return
 	}
-	if p.plain || int(p.active[j]) == g {
+	if p.plain || int(p.at[j].active) == g {
 		return
 	}
-	p.active[j] = int32(g)
-	if p.idle[j] != 0 {
+	p.at[j].active = int32(g)
+	if p.at[j].idle != 0 {
 		p.unset(j)
-		p.idle[j] = 0
+		p.at[j].idle = 0
 		p.set(j)
 	}
 	p.idleDue.put(g+leaves(0), j)
@@ -337,9 +338,9 @@ func (p *passer) grow() {
 	}
 	p.ageDue.drain(p.here, func(j int32) {
 		p.unset(j)
-		p.ageClass[j] = classOf(p.here - int(j))
+		p.at[j].age = classOf(p.here - int(j))
 		p.set(j)
-		p.ageDue.put(int(j)+leaves(p.ageClass[j]), j)
+		p.ageDue.put(int(j)+leaves(p.at[j].age), j)
 	})
 }
 
