@@ -220,11 +220,13 @@ func (h *heated) potential(r, start, tol float64) (float64, error) {
 				return -muLeast, nil
 			}
 		}
-		if !(next > low && next < high) {
-			next = (low + high) / 2
-		}
-		if math.Abs(next-y) < tol*math.Max(1, math.Abs(y)) || high-low < tol {
+		if math.Abs(next-y) < tol*math.Max(1, math.Abs(y)) {
 			return -math.Exp(next), nil
+		}
+		if !(next > low && next < high) {
+			if next = (low + high) / 2; high-low < tol {
+				return -math.Exp(next), nil
+			}
 		}
 		y = next
 	}
@@ -254,11 +256,13 @@ func (h *heated) nearTransition(surplus float64) (float64, error) {
 			high = y
 		}
 		next := y + math.Log(surplus/gap)*gap/slope
-		if !(next > low && next < high) {
-			next = (low + high) / 2
-		}
-		if math.Abs(next-y) < exactMu*math.Max(1, math.Abs(y)) || high-low < exactMu {
+		if math.Abs(next-y) < exactMu*math.Max(1, math.Abs(y)) {
 			return -math.Exp(next), nil
+		}
+		if !(next > low && next < high) {
+			if next = (low + high) / 2; high-low < exactMu {
+				return -math.Exp(next), nil
+			}
 		}
 		y = next
 	}
@@ -275,6 +279,7 @@ func (s *Spectrum) Critical(r float64) float64 {
 	low, high := math.Log(betaLow), math.Log(betaHigh)
 	x := -math.Log(s.Mean(func(e float64) float64 { return e })) // about the scale of the law
 	x = math.Max(low, math.Min(x, high))
+	step := math.Inf(1)
 	for range 200 {
 		i, slope := s.groundAndSlope(math.Exp(x))
 		miss := math.Log(i / r)
@@ -289,11 +294,16 @@ func (s *Spectrum) Critical(r float64) float64 {
 				return math.NaN()
 			}
 		}
-		if !(next > low && next < high) {
-			next = (low + high) / 2
-		}
-		if math.Abs(next-x) < 1e-15*math.Max(1, math.Abs(x)) || high-low < 1e-15 {
+		before := step
+		step = math.Abs(next - x)
+		// Steps that are small and grow again are rounding.
+		if step < 1e-15*math.Max(1, math.Abs(x)) || step < 1e-12 && step >= before {
 			return math.Exp(next)
+		}
+		if !(next > low && next < high) {
+			if next = (low + high) / 2; high-low < 1e-15 {
+				return math.Exp(next)
+			}
 		}
 		x = next
 	}
