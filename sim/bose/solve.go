@@ -148,7 +148,10 @@ func (s *Spectrum) Solve(beta float64, rule Rule) (Solution, error) {
 
 // rounding estimates the relative error of the ground integral: of summation, and of an edge exponent found numerically.
 func (s *Spectrum) rounding(beta, integral float64) float64 {
-	const summation = 2e-15
+	summation := 2e-15
+	if open, ok := s.law.(interface{ Missed() float64 }); ok && beta > 0 {
+		summation += open.Missed() / (beta * integral)
+	}
 	uncertain, ok := s.law.(interface{ EdgeUncertainty() float64 })
 	if !ok || s.edge.Below == 0 || math.IsInf(integral, 1) || s.edge.Theta <= 0 {
 		return summation

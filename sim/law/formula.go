@@ -19,6 +19,7 @@ type Formula struct {
 	panels  *panels
 	breaks  []float64
 	unsure  float64
+	missed  float64 // mass over energy that the panels leave open
 	largest float64
 	// the leading term of the density times e, in 31 digits, and ln e below which it is right; NaN where it was not found
 	theta, scale double.Number
@@ -96,6 +97,11 @@ func newFormula(text string, top float64) (Formula, error) {
 	p.total = p.panels.normalise()
 	if !(p.total > 1e-250 && p.total < 1e250) {
 		return Formula{}, fmt.Errorf("the formula integrates to %.3g over 0 to %g; it must be a finite number above 0", p.total, top)
+	}
+	for _, q := range p.panels.list {
+		if q.unsettled() {
+			p.missed += q.doubt() * exact.Exp(-q.low)
+		}
 	}
 	for _, q := range p.panels.list[1:] {
 		p.breaks = append(p.breaks, exact.Exp(q.low))
@@ -283,3 +289,6 @@ func (p Formula) Mean() float64 {
 func (p Formula) Edge() Edge                       { return p.panels.edge }
 func (p Formula) Knots() []float64                 { return p.breaks }
 func (p Formula) EdgeUncertainty() (theta float64) { return p.unsure }
+
+// Missed returns a bound of what the panels leave open of the mean of 1/e.
+func (p Formula) Missed() float64 { return p.missed }
