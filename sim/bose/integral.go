@@ -115,7 +115,7 @@ func (s *Spectrum) reach(to float64) {
 }
 
 // narrow panels lie around kinks: one node tells their mass and place.
-const narrow = 1e-6
+const narrow = 1e-8
 
 // panel adds the nodes between ln eps = low and the lowest so far.
 func (s *Spectrum) panel(low float64) {

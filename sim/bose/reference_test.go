@@ -30,7 +30,7 @@ var formulas = []struct {
 }{
 	{"e*exp(-3*e)+0.2*e^4", 2, 1, nil}, {"e^1.5*(2-e)", 2, 1.5, nil}, {"sqrt(e)", 3, 0.5, nil}, {"1+cos(pi*e)", 1, 0, nil}, {"e^0.3*exp(-e^2)", 4, 0.3, nil}, {"abs(e-0.25)+e^2/8", 1, 0, []float64{0.25}},
 	{"e/(1+e^2)^2", 50, 1, nil}, {"tanh(4*e)", 1.5, 1, nil}, {"e^2+max(0,e-0.75)", 2, 2, []float64{0.75}}, {"1/sqrt(e)", 1, -0.5, nil}, {"e^0.125", 0.5, 0.125, nil}, {"e^3*(1+0.5*sin(20*e))", 1, 3, nil}, {"exp(-e)*e^2", 30, 2, nil},
-	{"e*sqrt(abs(e-0.5))", 1, 1, []float64{0.5}}, {"e*(1.1+sin(40*e))*exp(-e)*(2+cos(30*e))", 3, 1, []float64{0.5, 1, 1.5, 2, 2.5}},
+	{"e*sqrt(abs(e-0.5))", 1, 1, []float64{0.5}}, {"e*tanh(5*abs(e-1)^0.3)", 2, 1, []float64{1}}, {"e*(1.1+sin(40*e))*exp(-e)*(2+cos(30*e))", 3, 1, []float64{0.5, 1, 1.5, 2, 2.5}},
 }
 
 // randomCase draws a law of any family, a sharpness and a rule.

@@ -114,7 +114,7 @@ func (p Scaled) Closely() (Close, bool) {
 }
 
 // mostCloseCalls of functions at one point of each piece: what 31 digits may cost.
-const mostCloseCalls = 1500
+const mostCloseCalls = 2500
 
 // Closely evaluates the expression in 31 digits; pieces end where the panels end and where a switch turns.
 func (p Formula) Closely() (Close, bool) {
@@ -139,6 +139,7 @@ func (p Formula) Closely() (Close, bool) {
 		for _, turn := range p.f.switches {
 			if x, ok := turning(turn, a, b); ok {
 				c.Ends = append(c.Ends, x)
+				c.Ends = append(c.Ends, p.grade(x, list[0].low, top.Float())...)
 			}
 		}
 		c.Ends = append(c.Ends, b)
@@ -154,6 +155,25 @@ func (p Formula) Closely() (Close, bool) {
 	}
 	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
 	return c, true
+}
+
+// grade returns ends that come closer to x from both sides by halves, where the density is not smooth up to x but, as far as
+// float64 tells, a power of the distance: on each piece it is smooth.
+func (p *Formula) grade(x double.Number, low, top float64) (ends []double.Number) {
+	const halvings, widest = 75, 0.5
+	for _, far := range [2]float64{math.Max(low, x.Float()-widest), math.Min(top, x.Float()+widest)} {
+		from := double.Of(far)
+		for k := 1; k <= halvings; k++ {
+			width := from.Minus(x).Float()
+			low := math.Min(x.Float(), x.Float()+width)
+			if width = math.Abs(width); width == 0 || width > 1e-12 && fit(p.mass, low, width).missed() < closeMiss {
+				break
+			}
+			from = x.Plus(from.Minus(x).Scaled(-1))
+			ends = append(ends, from)
+		}
+	}
+	return ends
 }
 
 // closeMiss is the share of the mass that 16 points on a piece may miss.
@@ -186,7 +206,10 @@ func (p *Formula) settle(c *Close, a, b float64, budget int) int {
 	if q.missed() < closeMiss {
 		return budget
 	}
-	if m := a + (b-a)/2; b-a > 1e-14 && budget > 0 {
+	if b-a <= 1e-13 { // a graded piece, whose shape float64 does not see
+		return budget
+	}
+	if m := a + (b-a)/2; budget > 0 {
 		c.Ends = append(c.Ends, double.Of(m))
 		return p.settle(c, m, b, p.settle(c, a, m, budget-1))
 	}
