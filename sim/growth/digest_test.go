@@ -43,6 +43,8 @@ func digestCases(t *testing.T) map[string]Params {
 		p.Links, p.Members, p.Seed = 2, 5000, 1
 		cases[name] = p
 	}
+	// Side by side, with tickets that are no whole numbers.
+	cases["parts"] = Params{Law: law.Power{Theta: .7}, Sharpness: 3, Links: 2.3, HeadStart: .37, OpenShare: .15, Members: 20000, Seed: 2}
 	return cases
 }
 

@@ -2,6 +2,7 @@ package growth
 
 import (
 	"math"
+	"runtime"
 
 	"preponder/sim/internal/exact"
 	"preponder/sim/internal/sums"
@@ -15,7 +16,7 @@ const (
 // Grow grows the network. step is called now and then with the share done and may end the growth with an error, which
 // Grow returns; it may be nil.
 func Grow(p Params, step func(done float64) error) (*Network, error) {
-	return growBy(p, step, processors())
+	return growBy(p, step, runtime.GOMAXPROCS(0))
 }
 
 // growBy is Grow with so many workers; with none newcomers are drawn one by one.

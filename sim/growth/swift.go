@@ -2,7 +2,6 @@ package growth
 
 import (
 	"math"
-	"runtime"
 	"slices"
 	"sync"
 
@@ -122,9 +121,6 @@ func each(workers, from, to int, do func(worker, from, to int)) {
 	}
 	all.Wait()
 }
-
-// processors is how many workers growth shares newcomers among.
-func processors() int { return runtime.GOMAXPROCS(0) }
 
 // best member before a newcomer.
 type best struct{ energy, weight float64 }
@@ -251,7 +247,7 @@ func (l *lanes) proposeReal(g *grower, base, before, try, open int) int {
 		k := l.link[i&(lane-1)]
 		seat := &l.seats[k&(lane-1)]
 		bits := exact.Bits(key, uint64(base+int(k)), 0)
-		own := g.own * float64(seat.who)
+		own := float64(g.own * float64(seat.who))
 		x := float64(exact.Unit(bits) * (own + float64(seat.received)))
 		r := x - own
 		if r >= float64(before) {
@@ -292,7 +288,7 @@ func (l *lanes) decide(g *grower, v, base, before, try, n int) int {
 		if h-w <= 1 {                            // too close for halves of a float32 to tell
 			no = 1
 			who, received := int(l.seats[k].who), float64(l.seats[k].received)
-			if g.accepts(exact.Bits(g.key, uint64(base+int(k)), uint64(try)), g.own*float64(who)+received, g.bests[who-v].weight, j) {
+			if g.accepts(exact.Bits(g.key, uint64(base+int(k)), uint64(try)), float64(g.own*float64(who))+received, g.bests[who-v].weight, j) {
 				no = 0
 			}
 		}
@@ -305,7 +301,7 @@ func (l *lanes) decide(g *grower, v, base, before, try, n int) int {
 func (g *grower) drawLate(a waiting, v int) bool {
 	who := int(a.who)
 	first := g.starts[who-v]
-	own := g.own * float64(who)
+	own := float64(g.own * float64(who))
 	for try := uint64(a.try); try < tries; try++ {
 		bits := exact.Bits(g.key, uint64(a.link), try)
 		j := g.holder(bits, who, own, g.Targets[:first])
