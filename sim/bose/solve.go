@@ -178,16 +178,26 @@ func (s *Spectrum) Mu(beta, r float64) (float64, error) { return s.mu(beta, r, m
 
 // mu is Mu where I(beta, 0) - r is known as well, NaN if not.
 func (s *Spectrum) mu(beta, r, surplus float64) (float64, error) {
-	h := s.heat(beta)
-	start := math.Log(math.Log1p(1/r)/beta) - 1
 	if surplus < nearby*r && s.edge.Theta > 0 {
-		return h.nearTransition(surplus)
+		return s.heat(beta).nearTransition(surplus)
 	}
-	return h.potential(r, start, exactMu)
+	return s.heat(beta).potential(r, math.Log(math.Log1p(1/r)/beta)-1, exactMu)
 }
 
 // errNoConvergence comes with the best mu so far.
 var errNoConvergence = errors.New("it was still moving after 200 steps")
+
+// toward returns where a search goes on from x: to next where that lies between low and high, else to their middle; done
+// tells that it has arrived, within tol.
+func toward(x, next, low, high, tol float64) (to float64, done bool) {
+	if math.Abs(next-x) < tol*math.Max(1, math.Abs(x)) {
+		return next, true
+	}
+	if !(next > low && next < high) {
+		return (low + high) / 2, high-low < tol
+	}
+	return next, false
+}
 
 // potential searches for mu from ln(-mu) = start until a step is smaller than tol.
 func (h *heated) potential(r, start, tol float64) (float64, error) {
@@ -223,15 +233,10 @@ func (h *heated) potential(r, start, tol float64) (float64, error) {
 				return -muLeast, nil
 			}
 		}
-		if math.Abs(next-y) < tol*math.Max(1, math.Abs(y)) {
-			return -math.Exp(next), nil
+		done := false
+		if y, done = toward(y, next, low, high, tol); done {
+			return -math.Exp(y), nil
 		}
-		if !(next > low && next < high) {
-			if next = (low + high) / 2; high-low < tol {
-				return -math.Exp(next), nil
-			}
-		}
-		y = next
 	}
 	return -math.Exp(y), errNoConvergence
 }
@@ -259,15 +264,10 @@ func (h *heated) nearTransition(surplus float64) (float64, error) {
 			high = y
 		}
 		next := y + math.Log(surplus/gap)*gap/slope
-		if math.Abs(next-y) < exactMu*math.Max(1, math.Abs(y)) {
-			return -math.Exp(next), nil
+		done := false
+		if y, done = toward(y, next, low, high, exactMu); done {
+			return -math.Exp(y), nil
 		}
-		if !(next > low && next < high) {
-			if next = (low + high) / 2; high-low < exactMu {
-				return -math.Exp(next), nil
-			}
-		}
-		y = next
 	}
 	return -math.Exp(y), errNoConvergence
 }
@@ -300,15 +300,13 @@ func (s *Spectrum) Critical(r float64) float64 {
 		before := step
 		step = math.Abs(next - x)
 		// Steps that are small and grow again are rounding.
-		if step < 1e-15*math.Max(1, math.Abs(x)) || step < 1e-12 && step >= before {
+		if step < 1e-12 && step >= before {
 			return math.Exp(next)
 		}
-		if !(next > low && next < high) {
-			if next = (low + high) / 2; high-low < 1e-15 {
-				return math.Exp(next)
-			}
+		done := false
+		if x, done = toward(x, next, low, high, 1e-15); done {
+			return math.Exp(x)
 		}
-		x = next
 	}
 	return math.Exp(x)
 }

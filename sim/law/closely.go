@@ -116,8 +116,11 @@ func (p Scaled) Closely() (Close, bool) {
 // mostCloseCalls of functions at one point of each piece: what 31 digits may cost.
 const mostCloseCalls = 2500
 
-// Closely evaluates the expression in 31 digits; pieces end where the panels end and where a switch turns.
-func (p Formula) Closely() (Close, bool) {
+// Closely evaluates the expression in 31 digits; pieces end where the panels end and where a switch turns. They are found
+// when they are first asked for.
+func (p Formula) Closely() (Close, bool) { return p.close() }
+
+func (p Formula) closely() (Close, bool) {
 	if !p.theta.Finite() || !p.scale.Finite() {
 		return Close{}, false
 	}
@@ -202,14 +205,13 @@ func (q panel) missed() float64 {
 
 // settle cuts the piece from a to b, in ln e, until 16 points tell each part of it, or adds it to the doubt.
 func (p *Formula) settle(c *Close, a, b float64, budget int) int {
+	const unseen = 1e-13 // float64 does not see the shape of pieces so short; they lie where others end in steps, see grade
 	q := fit(p.mass, a, b-a)
-	if q.missed() < closeMiss {
+	if q.missed() < closeMiss || b-a <= unseen {
 		return budget
 	}
-	if b-a <= 1e-13 { // a graded piece, whose shape float64 does not see
-		return budget
-	}
-	if m := a + (b-a)/2; budget > 0 {
+	if budget > 0 {
+		m := a + (b-a)/2
 		c.Ends = append(c.Ends, double.Of(m))
 		return p.settle(c, m, b, p.settle(c, a, m, budget-1))
 	}

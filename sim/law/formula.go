@@ -24,6 +24,7 @@ type Formula struct {
 	// the leading term of the density times e, in 31 digits, and ln e below which it is right; NaN where it was not found
 	theta, scale double.Number
 	sure         float64
+	close        func() (Close, bool) // closely, once
 }
 
 // recent keeps the formulas made last: while something else is dragged the same one is asked for in every frame.
@@ -106,6 +107,7 @@ func newFormula(text string, top float64) (Formula, error) {
 	for _, q := range p.panels.list[1:] {
 		p.breaks = append(p.breaks, exact.Exp(q.low))
 	}
+	p.close = sync.OnceValues(p.closely)
 	return p, nil
 }
 

@@ -3,8 +3,6 @@
 // An energy eps >= 0 belongs to every member; its fitness is exp(-sharpness*eps). The ground level is eps = 0.
 package law
 
-import "math"
-
 // A Law is a distribution of energies.
 type Law interface {
 	// Density returns p(eps), 0 outside the support. Laws of levels return 0 everywhere and implement Leveled.
@@ -40,10 +38,8 @@ type Often interface {
 
 // Quantiles replaces each share by its Quantile.
 func Quantiles(l Law, u []float64) {
-	if p, ok := l.(Power); ok && p.Theta == 1 { // without a call for each
-		for i, x := range u {
-			u[i] = math.Sqrt(x)
-		}
+	if many, ok := l.(interface{ quantiles(u []float64) }); ok { // without a call for each
+		many.quantiles(u)
 		return
 	}
 	for i, x := range u {

@@ -28,13 +28,24 @@ func (p Power) Cumulative(eps float64) float64 {
 }
 
 func (p Power) Quantile(u float64) float64 {
+	one := [1]float64{u}
+	p.quantiles(one[:])
+	return one[0]
+}
+
+func (p Power) quantiles(u []float64) {
 	switch p.Theta {
 	case 0:
-		return u
 	case 1:
-		return math.Sqrt(u)
+		for i, x := range u {
+			u[i] = math.Sqrt(x)
+		}
+	default:
+		power := 1 / (p.Theta + 1)
+		for i, x := range u {
+			u[i] = exact.Pow(x, power)
+		}
 	}
-	return exact.Pow(u, 1/(p.Theta+1))
 }
 
 func (p Power) Support() (low, high float64) { return 0, 1 }

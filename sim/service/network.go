@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"math"
+	"sort"
 	"strconv"
 
 	"preponder/sim/bose"
@@ -295,9 +296,7 @@ var Bands = []float64{0.001, 0.01, 0.1, 0.5}
 func levels(n *growth.Network, sizes []int32) [][]float64 {
 	band := make([]uint8, n.Members)
 	for j := range band {
-		for band[j] < uint8(len(Bands)) && n.Rank(j) > Bands[band[j]] {
-			band[j]++
-		}
+		band[j] = uint8(sort.SearchFloat64s(Bands, n.Rank(j)))
 	}
 	held := make([]int, len(Bands)+1)
 	out := make([][]float64, len(Bands))
