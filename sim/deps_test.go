@@ -21,7 +21,7 @@ sim/bose                <- sim/internal/double sim/internal/gauss sim/law
 sim/growth              <- sim/internal/exact sim/internal/sums sim/law
 sim/share               <-
 sim/standing            <- sim/bose
-sim/evidence            <- sim/bose sim/growth sim/internal/exact sim/internal/sums sim/law sim/share
+sim/evidence            <- sim/bose sim/growth sim/internal/exact sim/internal/sums sim/law sim/share sim/standing
 sim/outlook             <- sim/evidence sim/growth sim/internal/exact sim/share
 sim/casebook            <- sim/evidence sim/growth sim/law
 sim/wire                <-

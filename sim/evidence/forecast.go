@@ -9,6 +9,8 @@ import (
 
 	"preponder/sim/internal/exact"
 	tree "preponder/sim/internal/sums"
+	"preponder/sim/share"
+	"preponder/sim/standing"
 )
 
 // Cuts of the forecast, as shares of the log: how much longer it looks ahead, where the test on the log's own past is
@@ -71,7 +73,8 @@ type BackTest struct {
 
 // forecast makes the forecast of a log whose extended rule has been fitted: terms and fitness.
 func forecast(h *History, fitted *mixed, terms Terms, step func(done float64) error) (*Forecast, error) {
-	if h.Choices < forecastChoices {
+	past, truth := h.Until(testFrom), h.Until(testTo)
+	if h.Choices < forecastChoices || past.Until(trained).Choices < forecastChoices/10 {
 		return nil, nil
 	}
 	f := &Forecast{}
@@ -86,7 +89,6 @@ func forecast(h *History, fitted *mixed, terms Terms, step func(done float64) er
 	}
 	// The test on the past sees nothing after its cut, its half-life neither; only the search for the terms begins at what
 	// the whole log says.
-	past, truth := h.Until(testFrom), h.Until(testTo)
 	half, _, err := halfLife(past, terms, false, tick)
 	if err != nil {
 		return nil, err
@@ -161,9 +163,8 @@ func halfLife(h *History, terms Terms, explain bool, tick func() error) (float64
 	if err != nil {
 		return 0, HeldOut{}, err
 	}
-	ones := newMixed(h).eta
-	equal := held(ones, Terms{1, math.Log(first.PerArrival()), 0, 0})
-	rest := held(ones, same)
+	equal := held(ones(h.Members()), Terms{1, math.Log(first.PerArrival()), 0, 0})
+	rest := held(ones(h.Members()), same)
 	n := h.Choices - first.Choices
 	return found, HeldOut{perChoice(best-rest, n), perChoice(rest-equal, n)}, nil
 }
@@ -220,9 +221,7 @@ func running(w, v []float64) []float64 {
 }
 
 func (p *posteriors) mean(j int) float64 {
-	c := p.of[j]
-	q := p.grid.posterior(int(c), p.weights)
-	return q.mean
+	return p.grid.posterior(int(p.of[j]), p.weights).mean
 }
 
 // draw returns a fitness from the posterior of member j, or from the law where j is none of those.
@@ -293,8 +292,8 @@ func newFuture(h *History, m *mixed, t Terms, half, more float64) *future {
 	}
 	f.starts = append(f.starts, len(f.events))
 	rounds := int(added)/len(f.events) + 2
-	f.rooms = [2]int{h.Members() + rounds*newcomers, h.Groups() + rounds*len(f.starts)}
-	f.base = newPasser(h, ones(f.rooms[0]), t, slopes, f.rooms[0], f.rooms[1])
+	f.rooms = [2]int{h.Members() + rounds*newcomers, h.Groups() + rounds*(len(f.starts)-1)}
+	f.base = newPasser(h, ones(f.rooms[0]), t, slopes, f.rooms[0], f.rooms[1]) // slopes: ages and idle times, whatever the terms
 	f.base.run(exposures)
 	for j, picked := range f.base.picks {
 		f.base.picks[j] = slices.Clip(picked)
@@ -348,28 +347,25 @@ func (f *future) path(number uint32) (shares [3][]float64, still bool) {
 		eta[j] = f.post.draw(j, unit(), unit())
 	}
 	p := f.base.clone(h, eta)
-	at, size := int(unit()*float64(len(f.starts)-1)), 0
+	at := int(unit() * float64(len(f.starts)-1))
 	for {
-		for ; size < len(f.sizes) && len(h.Target) >= int(f.sizes[size]); size++ {
-			top := largest(p.received(), 10)
-			all := float64(len(h.Target))
-			sum := 0
-			for _, d := range top {
-				sum += int(d)
+		now, leads := noted(p.received(), len(h.Target), f.leader)
+		// A network in which everyone has picked everyone grows no further: its shares stay.
+		stuck := h.Groups() == f.rooms[1]
+		for len(shares[0]) < len(f.sizes) && (stuck || len(h.Target) >= int(f.sizes[len(shares[0])])) {
+			for s, v := range now {
+				shares[s] = append(shares[s], v)
 			}
-			shares[0] = append(shares[0], float64(top[0])/all)
-			shares[1] = append(shares[1], float64(sum)/all)
-			shares[2] = append(shares[2], float64(p.at[f.leader].links)/all)
-			still = p.at[f.leader].links == top[0]
 		}
-		if size == len(f.sizes) {
+		if len(shares[0]) == len(f.sizes) {
 			if f.seen != nil {
 				f.seen(h)
 			}
-			return shares, still
+			return shares, leads
 		}
-		f.group(p, f.events[f.starts[at]:f.starts[at+1]], unit)
-		at = (at + 1) % (len(f.starts) - 1)
+		for next := int(f.sizes[len(shares[0])]); len(h.Target) < next && h.Groups() < f.rooms[1]; at = (at + 1) % (len(f.starts) - 1) {
+			f.group(p, f.events[f.starts[at]:f.starts[at+1]], unit)
+		}
 	}
 }
 
@@ -458,25 +454,16 @@ func (c calendar) clone() calendar {
 	return calendar{slices.Clone(c.head), slices.Clone(c.node), c.spare}
 }
 
-// largest returns the k largest values, falling.
-func largest(v []int32, k int) []int32 {
-	top := make([]int32, 0, k+1)
-	for _, d := range v {
-		if len(top) == k && d <= top[k-1] {
-			continue
-		}
-		at := len(top)
-		for at > 0 && top[at-1] < d {
-			at--
-		}
-		if top = slices.Insert(top, at, d); len(top) > k {
-			top = top[:k]
-		}
+// noted returns the shares a forecast speaks of, those of whoever leads, of the top ten and of one member, and whether that
+// member leads.
+func noted(received []int32, links int, member int32) (shares [3]float64, leads bool) {
+	top := share.Largest(received, 10)
+	sum := 0
+	for _, j := range top {
+		sum += int(received[j])
 	}
-	for len(top) < k {
-		top = append(top, 0)
-	}
-	return top
+	most, all := received[top[0]], float64(links)
+	return [3]float64{float64(most) / all, float64(sum) / all, float64(received[member]) / all}, received[member] == most
 }
 
 // band returns the quantiles of one of the three shares over the paths.
@@ -488,11 +475,7 @@ func (f *future) band(which int) Band {
 			v = append(v, p[k])
 		}
 		slices.Sort(v)
-		at := func(q float64) float64 {
-			x := q * float64(len(v)-1)
-			i := min(int(x), len(v)-2)
-			return v[i] + (x-float64(i))*(v[i+1]-v[i])
-		}
+		at := func(q float64) float64 { return share.Quantile(v, q) }
 		b.Q025, b.Q10, b.Q50, b.Q90, b.Q975 = append(b.Q025, at(.025)), append(b.Q10, at(.1)), append(b.Q50, at(.5)), append(b.Q90, at(.9)), append(b.Q975, at(.975))
 	}
 	return b
@@ -516,18 +499,13 @@ func (f *future) against(truth *History) (BackTest, float64) {
 	t := BackTest{Links: f.sizes, Leader: f.band(0)}
 	received := make([]int32, truth.Members())
 	at := 0
-	var end, begin [3]float64
+	var begin, end [3]float64
 	for k, size := range f.sizes {
-		for ; at < int(min(int(size), len(truth.Target))); at++ {
+		for ; at < min(int(size), len(truth.Target)); at++ {
 			received[truth.Target[at]]++
 		}
-		top := largest(received, 10)
-		sum := 0
-		for _, d := range top {
-			sum += int(d)
-		}
-		t.Truth = append(t.Truth, float64(top[0])/float64(at))
-		end = [3]float64{float64(top[0]) / float64(at), float64(sum) / float64(at), float64(received[f.leader]) / float64(at)}
+		end, _ = noted(received, at, f.leader)
+		t.Truth = append(t.Truth, end[0])
 		if k == 0 {
 			begin = end
 		}
@@ -555,7 +533,7 @@ func (f *Forecast) sentences() []string {
 	last := len(f.Links) - 1
 	if f.Given {
 		out = append(out, fmt.Sprintf("If it grows on as it did, today's leader goes from %s of all links to %s (%s to %s) by the time there are half as many links again; still leading: %.0f in 100.",
-			percent(f.Today.Q50[0]), percent(f.Today.Q50[last]), percent(f.Today.Q025[last]), percent(f.Today.Q975[last]), 100*f.Same))
+			standing.Percent(f.Today.Q50[0]), standing.Percent(f.Today.Q50[last]), standing.Percent(f.Today.Q025[last]), standing.Percent(f.Today.Q975[last]), 100*f.Same))
 	}
 	fitness := "less than 0.01"
 	if f.Bits.Fitness >= 0.01 {
@@ -637,17 +615,4 @@ func (f *Forecast) verify() error {
 		return bad
 	}
 	return nil
-}
-
-// percent writes a share of links.
-func percent(x float64) string {
-	switch {
-	case x >= 0.1:
-		return fmt.Sprintf("%.0f %%", 100*x)
-	case x >= 0.01:
-		return fmt.Sprintf("%.1f %%", 100*x)
-	case x >= 0.001:
-		return fmt.Sprintf("%.2f %%", 100*x)
-	}
-	return fmt.Sprintf("%.1g %%", 100*x)
 }

@@ -2,10 +2,12 @@ package evidence
 
 import (
 	"encoding/json"
-	"os"
+	"fmt"
 	"os/exec"
 	"strings"
 	"testing"
+
+	"preponder/sim/internal/near"
 )
 
 // holdAgainst forecasts a log from a cut and holds the forecast against a later one.
@@ -33,10 +35,7 @@ func holdAgainst(t *testing.T, h *History, from, to float64) (BackTest, float64)
 func TestForecastOfTheKeyring(t *testing.T) {
 	log, err := exec.Command("bash", "../../site/test/keyring.sh").Output()
 	if err != nil || strings.Count(string(log), "\n") < 5000 {
-		if os.Getenv("PREPONDER_REFERENCES") != "" {
-			t.Fatalf("the keyring cannot be read: %v", err)
-		}
-		t.Skip("debian-keyring and gpg are not here; ./build.sh test installs them")
+		near.Missing(t, "debian-keyring and gpg")
 	}
 	rows, err := Read(log, mustLook(t, log), func(float64) error { return nil })
 	if err != nil {
@@ -123,6 +122,34 @@ func TestForecastIsRefused(t *testing.T) {
 	for _, f := range []*Forecast{{}, {Links: []int32{5, 3}}, {Links: []int32{3, 5}, Factor: 1, Same: 2}} {
 		if f.verify() == nil {
 			t.Errorf("%+v passes", f)
+		}
+	}
+}
+
+// In a log where nearly everyone has picked everyone paths end, and their shares stay.
+func TestPathsEnd(t *testing.T) {
+	l := &Rows{}
+	for i := range 20 {
+		l.Names = append(l.Names, fmt.Sprint("x", i))
+		for j := range int32(i) {
+			l.Source, l.Target, l.Time = append(l.Source, int32(i)), append(l.Target, j), append(l.Time, float64(i))
+		}
+	}
+	for i := range int32(20) {
+		for j := i + 1; j < 19; j++ {
+			l.Source, l.Target, l.Time = append(l.Source, i), append(l.Target, j), append(l.Time, float64(20+len(l.Time)))
+		}
+	}
+	h := NewHistory(l)
+	m, terms, err := fitExtended(h, Terms{1, 0.7, 0, 0}, func() error { return nil })
+	if err != nil {
+		t.Fatal(err)
+	}
+	f := newFuture(h, m, terms, 0, 3)
+	shares, _ := f.path(1)
+	for s := range shares {
+		if len(shares[s]) != len(f.sizes) || shares[s][len(f.sizes)-1] != shares[s][len(f.sizes)-2] {
+			t.Errorf("shares %v", shares[s])
 		}
 	}
 }

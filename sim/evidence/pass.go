@@ -46,7 +46,7 @@ type passer struct {
 	steep bool // the gradient is wanted
 
 	out     sums
-	at      []standing
+	at      []place
 	s       float64 // sum of 1/Z over choices so far
 	count   float64 // what the next choice counts, 1 without drift
 	growth  float64 // by which that grows from choice to choice
@@ -66,8 +66,8 @@ type passer struct {
 	aged, idled [64]float64
 }
 
-// A standing is what the walk knows of a member, in one place of memory.
-type standing struct {
+// A place is what the walk knows of a member, in one place of memory.
+type place struct {
 	eta       float64
 	w         float64 // its weight now, 0 before arrival
 	exposure  float64 // up to the moment when S was last
@@ -99,7 +99,7 @@ func recently(h *History, eta []float64, t Terms, half float64) sums {
 // newPasser returns one that has seen nothing yet, with room for so many members and groups.
 func newPasser(h *History, eta []float64, t Terms, w want, n, groups int) *passer {
 	p := &passer{h: h, terms: t, plain: t.Alpha == 1 && t.Nu == 0 && t.Mu == 0 && w != slopes, steep: w == slopes,
-		at: make([]standing, n), count: 1, growth: 1}
+		at: make([]place, n), count: 1, growth: 1}
 	for j := range p.at {
 		p.at[j].eta = eta[j]
 	}

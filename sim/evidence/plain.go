@@ -39,11 +39,7 @@ type mixed struct {
 }
 
 func newMixed(h *History) *mixed {
-	m := &mixed{h: h, eta: make([]float64, h.Members())}
-	for j := range m.eta {
-		m.eta[j] = 1
-	}
-	return m
+	return &mixed{h: h, eta: ones(h.Members())}
 }
 
 // settle alternates the pass over the log and the law until the likelihood moves less than tol.

@@ -5,6 +5,8 @@ import (
 	"fmt"
 	"math"
 	"slices"
+
+	"preponder/sim/share"
 )
 
 // Quantiles of one figure over the runs.
@@ -116,20 +118,12 @@ func chance(k, n int) Chance {
 	return Chance{p, math.Sqrt(smooth * (1 - smooth) / (float64(n) + 4))}
 }
 
-// quantiles by linear interpolation between order statistics (type 7 of Hyndman and Fan, 1996).
 func quantiles(v []float64) Quantiles {
 	s := slices.Sorted(slices.Values(v))
 	sum := 0.0
 	for _, x := range s {
 		sum += x
 	}
-	at := func(p float64) float64 {
-		h := p * float64(len(s)-1)
-		i := int(h)
-		if i+1 >= len(s) {
-			return s[len(s)-1]
-		}
-		return s[i] + (h-float64(i))*(s[i+1]-s[i])
-	}
+	at := func(p float64) float64 { return share.Quantile(s, p) }
 	return Quantiles{sum / float64(len(s)), at(.025), at(.1), at(.5), at(.9), at(.975)}
 }

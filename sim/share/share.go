@@ -61,6 +61,17 @@ func Largest(received []int32, k int) []int32 {
 	return top
 }
 
+// Quantile returns the value below which a share p of the values lies, by linear interpolation between order statistics
+// (type 7 of Hyndman and Fan, 1996).
+func Quantile(ascending []float64, p float64) float64 {
+	h := p * float64(len(ascending)-1)
+	i := int(h)
+	if i+1 >= len(ascending) {
+		return ascending[len(ascending)-1]
+	}
+	return ascending[i] + (h-float64(i))*(ascending[i+1]-ascending[i])
+}
+
 // Gini returns the Gini coefficient of the values, 0 when all are equal:
 //
 //	G = 2 sum i x_(i) / (n sum x) - (n + 1)/n,   x sorted increasing, i from 1.
