@@ -103,6 +103,7 @@ const shaped = {
   drawn: { law: { family: "drawn", knots: [[0, 0], [0.2, 0.8], [0.4, 0.1], [0.8, 2], [1.3, 0]] }, sharpness: 3 }, "tiny ground": { law: { family: "drawn", knots: [[0, 1e-30], [0.2, 0.8], [1.3, 0]] }, sharpness: 8 },
   formula: { law: { family: "formula", density: "e*exp(-3*e)+0.2*e^4", top: 2 }, sharpness: 3 }, kinks: { law: { family: "formula", density: "abs(e-0.3)*max(0,sin(9*e))+e^2", top: 2 }, sharpness: 3 }, lognormal: { law: { family: "lognormal", sigma: 1 }, sharpness: 2 },
   "margin 1 + 1e-7": { law: { family: "power", theta: 0.2 }, sharpness: 4.539068 }, "drawn, margin 1 + 1e-7": { law: { family: "drawn", knots: [[0, 0], [0.2, 0.8], [0.4, 0.1], [0.8, 2], [1.3, 0]] }, sharpness: 1.506501 }, "formula, margin 1 + 1e-7": { law: { family: "formula", density: "e^0.3*exp(-e^2)", top: 4 }, sharpness: 3.3545365 },
+  "corner, margin 1 + 1e-7": { law: { family: "formula", density: "e*sqrt(abs(e-0.5))", top: 1 }, sharpness: 1.41059193 }, "thirteen corners, margin 1 + 1e-7": { law: { family: "formula", density: "e*abs(sin(20*e))", top: 2 }, sharpness: 0.69684478 },
   "formula refused": { law: { family: "formula", density: `2+${"sin(97*e)*".repeat(17)}1`, top: 50 }, sharpness: 2 }, "nested and refused": { law: { family: "formula", density: "2+sin(3*".repeat(20) + "e" + ")".repeat(20), top: 50 }, sharpness: 2 },
 };
 for (const [name, entry] of Object.entries(shaped)) {

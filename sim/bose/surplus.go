@@ -31,45 +31,40 @@ func (s *Spectrum) surplus(beta float64, r double.Number) (diff, miss float64, o
 		return 0, 0, false
 	}
 	var integral, mass double.Number
-	nodes, weights := double.Sixteen()
 	b := double.Of(beta)
-	widest := math.Min(0.8, 6/(1+s.edge.Theta))
-	turn := math.Min(-math.Log(beta), c.Ends[len(c.Ends)-1].Float()) - 1
-	plain := math.Min(turn-50, c.Below)
+	add := func(nodes []law.Node) {
+		for _, n := range nodes {
+			mass = mass.Plus(n.Mass)
+			if up := n.E.Times(b); up.Float() < 100 {
+				integral = integral.Plus(n.Mass.Over(up.Expm1()))
+			}
+		}
+	}
 	theta := c.Theta.Float()
-	var spread [16]double.Number // e over its value at the center, for the panel before
-	var before double.Number
-	high := c.Ends[len(c.Ends)-1]
-	ends := c.Ends[:len(c.Ends)-1]
+	last := len(c.Ends) - 1
+	turn := math.Min(-math.Log(beta), c.Ends[last].Float()) - 1
+	plain := math.Min(turn-50, c.Below)
+	high, ends := c.Ends[last], c.Ends[:last]
+	if c.Nodes != nil {
+		add(c.Nodes)
+		high, ends = c.Ends[0], nil
+	}
+	var panel []law.Node
 	for {
 		x := high.Float()
 		if tail := math.Exp(theta*x) / beta / theta * c.Scale.Float(); x < plain || x < turn && tail < 1e-28*integral.Float() {
 			break
 		}
-		width := widest
+		width := c.Widest()
 		if x < turn {
-			width = math.Min(widest+0.4*(turn-x), 8/(1+theta))
+			width = math.Min(width+0.4*(turn-x), 8/(1+theta))
 		}
 		low := high.Minus(double.Of(width))
 		if n := len(ends); n > 0 && low.Less(ends[n-1]) {
 			low, ends = ends[n-1], ends[:n-1]
 		}
-		center, half := high.Plus(low).Scaled(-1), high.Minus(low).Scaled(-1)
-		if half != before {
-			for i, t := range nodes {
-				spread[i] = half.Times(t).Exp()
-			}
-			before = half
-		}
-		middle := center.Exp()
-		for i, t := range nodes {
-			at, e := center.Plus(half.Times(t)), middle.Times(spread[i])
-			m := c.Mass(at, e).Times(half).Times(weights[i])
-			mass = mass.Plus(m)
-			if up := e.Times(b); up.Float() < 100 {
-				integral = integral.Plus(m.Over(up.Expm1()))
-			}
-		}
+		panel = c.Between(panel[:0], low, high)
+		add(panel)
 		high = low
 	}
 	if grounded := c.Scale.Times(high.Times(c.Theta).Exp()); grounded.Float() > 0 {

@@ -26,6 +26,65 @@ type Close struct {
 	Below        float64
 	// Doubt is a sum over e of the share of the mass that the pieces do not settle.
 	Doubt float64
+	// Nodes stand for all mass above Ends[0], where a law keeps them: then what depends on it alone is not asked for again.
+	Nodes []Node
+
+	half   double.Number // of the last panel
+	spread [16]double.Number
+}
+
+// A Node is mass, with the factor of Mass, at an energy.
+type Node struct{ E, Mass double.Number }
+
+// Between adds the nodes of the 16-point rule between ln e = low and high.
+func (c *Close) Between(nodes []Node, low, high double.Number) []Node {
+	points, weights := double.Sixteen()
+	center, half := high.Plus(low).Scaled(-1), high.Minus(low).Scaled(-1)
+	if half != c.half { // e over its value at the center
+		for i, t := range points {
+			c.spread[i] = half.Times(t).Exp()
+		}
+		c.half = half
+	}
+	middle := center.Exp()
+	for i, t := range points {
+		e := middle.Times(c.spread[i])
+		nodes = append(nodes, Node{e, c.Mass(center.Plus(half.Times(t)), e).Times(half).Times(weights[i])})
+	}
+	return nodes
+}
+
+// Widest returns how long panels may be in ln e for 16 points to tell them to 31 digits.
+func (c *Close) Widest() float64 { return math.Min(0.8, 6/(1+math.Max(c.Theta.Float(), 0))) }
+
+// point is how short a piece is whose mass may lie at one energy, the mean: what that misses is the square of it.
+const point = 1e-8
+
+// keep fills in the nodes.
+func (c *Close) keep() {
+	for i, low := range c.Ends[:len(c.Ends)-1] {
+		high := c.Ends[i+1]
+		width := high.Minus(low).Float()
+		if width <= 0 {
+			continue
+		}
+		if width < point {
+			var mass, moment double.Number
+			for _, n := range c.Between(nil, low, high) {
+				mass, moment = mass.Plus(n.Mass), moment.Plus(n.Mass.Times(n.E))
+			}
+			if mass.Float() > 0 {
+				c.Nodes = append(c.Nodes, Node{moment.Over(mass), mass})
+			}
+			continue
+		}
+		parts := math.Ceil(width / c.Widest())
+		step := high.Minus(low).Over(double.Of(parts))
+		for k := range int(parts) {
+			from := low.Plus(step.By(float64(k)))
+			c.Nodes = c.Between(c.Nodes, from, from.Plus(step))
+		}
+	}
 }
 
 // beyond is where a law without a top is cut: exp(-beyond) is below 1e-32.
@@ -149,7 +208,8 @@ func (p Formula) closely() (Close, bool) {
 	}
 	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
 	low, budget := list[0].low, 300
-	for _, b := range c.Ends[:len(c.Ends):len(c.Ends)] {
+	c.Ends = append([]double.Number{double.Of(low)}, c.Ends...)
+	for _, b := range c.Ends[1:len(c.Ends):len(c.Ends)] {
 		budget = p.settle(&c, low, b.Float(), budget)
 		low = b.Float()
 	}
@@ -157,6 +217,7 @@ func (p Formula) closely() (Close, bool) {
 		return Close{}, false
 	}
 	sort.Slice(c.Ends, func(i, j int) bool { return c.Ends[i].Less(c.Ends[j]) })
+	c.keep()
 	return c, true
 }
 
